@@ -1,0 +1,3 @@
+module calandria.example/calandria
+
+go 1.26
