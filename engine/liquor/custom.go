@@ -1,0 +1,103 @@
+package liquor
+
+import (
+	"errors"
+	"fmt"
+	"math"
+	"strconv"
+
+	"calandria.example/calandria/engine/fault"
+	"calandria.example/calandria/engine/quantity"
+)
+
+// Custom holds a caller's own figures. Exactly one of the three rises and one
+// of the two kinds of heat must be set.
+type Custom struct {
+	Source string // where the figures come from
+
+	RiseConstant   *float64      // K, the same everywhere
+	RisePolynomial []float64     // K, coefficients of rising powers of the solids fraction
+	Duhring        []DuhringLine // in rising order of solids
+
+	SpecificHeat  []float64     // J/(kg K), coefficients of rising powers of the solids fraction
+	EnthalpyTable []EnthalpyRow // in rising order of solids
+}
+
+// DuhringLine is t_liquor = Intercept + Slope t_water, both in degC, for one
+// strength.
+type DuhringLine struct {
+	Solids    float64 // kg/kg
+	Slope     float64
+	Intercept float64 // degC
+}
+
+// EnthalpyRow holds the enthalpies of one strength.
+type EnthalpyRow struct {
+	Solids float64 // kg/kg
+	Points []EnthalpyPoint
+}
+
+// EnthalpyPoint is one reading of a chart.
+type EnthalpyPoint struct {
+	Temperature quantity.Temperature // K, rising within a row
+	Enthalpy    quantity.Enthalpy    // J/kg, 0 for liquid water at 0 degC
+}
+
+// New makes a liquor from a caller's figures. It refuses, with one
+// *fault.Invalid for each problem (joined), figures that are not finite, not
+// in rising order, or missing.
+func New(c Custom) (*Liquor, error) {
+	var problems []error
+	complain := func(field, value, limit, wayOut string) {
+		problems = append(problems, &fault.Invalid{Field: field, Value: value, Limit: limit, WayOut: wayOut})
+	}
+	l := &Liquor{source: c.Source}
+	switch {
+	case c.RiseConstant != nil:
+		if !(*c.RiseConstant >= 0 && *c.RiseConstant <= largestRise) {
+			complain("custom_liquor.rise_k", number(*c.RiseConstant), "0 to 200 K", "give the rise as a difference in K")
+		}
+		l.rise = constantRise(*c.RiseConstant)
+	case len(c.RisePolynomial) > 0:
+		checkFinite(c.RisePolynomial, "custom_liquor.rise_polynomial.coefficients_k", complain)
+		l.rise = polynomialRise(trimmed(c.RisePolynomial))
+	case len(c.Duhring) > 0:
+		l.rise = newDuhring(c.Duhring, complain)
+	default:
+		complain("custom_liquor", "without a boiling-point rise", "one of rise_k, rise_polynomial, duhring", "give rise_k = 0 if the liquor boils like water")
+	}
+	switch {
+	case len(c.SpecificHeat) > 0:
+		checkFinite(c.SpecificHeat, "custom_liquor.specific_heat_polynomial.coefficients_kj_per_kg_k", complain)
+		l.heat = specificHeat(trimmed(c.SpecificHeat))
+	case len(c.EnthalpyTable) > 0:
+		l.heat = newEnthalpyTable(c.EnthalpyTable, complain)
+	default:
+		complain("custom_liquor", "without heat", "one of specific_heat_kj_per_kg_k, specific_heat_polynomial, enthalpy_table", "give at least a specific heat")
+	}
+	if len(problems) > 0 {
+		return nil, errors.Join(problems...)
+	}
+	return l, nil
+}
+
+type complaint func(field, value, limit, wayOut string)
+
+func checkFinite(values []float64, field string, complain complaint) {
+	for i, v := range values {
+		if math.IsNaN(v) || math.IsInf(v, 0) {
+			complain(fmt.Sprintf("%s[%d]", field, i), number(v), "a finite number", "leave it out")
+		}
+	}
+}
+
+// trimmed is c without zeros at its end, so that a polynomial's length tells
+// whether it depends on its variable.
+func trimmed(c []float64) []float64 {
+	for len(c) > 1 && c[len(c)-1] == 0 {
+		c = c[:len(c)-1]
+	}
+	return c
+}
+
+func number(v float64) string { return strconv.FormatFloat(v, 'g', -1, 64) }

@@ -1,0 +1,273 @@
+package train
+
+import (
+	"math"
+
+	"calandria.example/calandria/engine/liquor"
+	"calandria.example/calandria/engine/quantity"
+	"calandria.example/calandria/engine/steam"
+)
+
+// relation names one of the equations of the plant.
+type relation int
+
+const (
+	massBalance relation = iota
+	solidsBalance
+	energyBalance
+	chestBalance
+	rateEquation
+	boilingEquilibrium
+	vapourPressure
+	steamPressure
+	chestTemperature
+	temperatureDifference
+	productSolids
+	productTemperature
+	evaporationSum
+	economyDefinition
+	relations
+)
+
+var relationNames = [relations]string{
+	massBalance:           "mass balance",
+	solidsBalance:         "solids balance",
+	energyBalance:         "energy balance of the liquor",
+	chestBalance:          "energy balance of the steam chest",
+	rateEquation:          "heat-transfer rate",
+	boilingEquilibrium:    "boiling-point rise",
+	vapourPressure:        "saturation line of the vapour",
+	steamPressure:         "saturation line of the live steam",
+	chestTemperature:      "chest temperature",
+	temperatureDifference: "driving force",
+	productSolids:         "solids of the product",
+	productTemperature:    "temperature of the product",
+	evaporationSum:        "evaporation",
+	economyDefinition:     "economy",
+}
+
+// widest is how many numbers stand in the widest relation.
+const widest = 11
+
+// equation is a relation with the numbers that stand in it.
+type equation struct {
+	relation relation
+	in       []Number
+}
+
+// equationsOf returns the equations of a plant that concentrates l. A number
+// stands in an equation only where it can change it, so that the structure of
+// a question tells the truth.
+func equationsOf(l *liquor.Liquor) []equation {
+	equilibrium := []Number{BoilingTemperature, VapourSaturationTemperature}
+	if l.RiseDependsOnSolids() {
+		equilibrium = append(equilibrium, SolidsOut)
+	}
+	energy := []Number{FeedFlow, FeedTemperature, Duty, HeatLoss, VapourFlow, VapourSaturationTemperature, BoilingTemperature, ProductFlow, Entrainment}
+	if l.EnthalpyDependsOnSolids() {
+		energy = append(energy, FeedSolids, SolidsOut)
+	}
+	return []equation{
+		{massBalance, []Number{FeedFlow, ProductFlow, VapourFlow, Entrainment}},
+		{solidsBalance, []Number{FeedFlow, FeedSolids, ProductFlow, VapourFlow, Entrainment, SolidsOut}},
+		{energyBalance, energy},
+		{chestBalance, []Number{Duty, SteamFlow, Vent, SteamTemperature, Superheat, Dryness, ChestTemperature, Subcooling}},
+		{rateEquation, []Number{Duty, Area, Coefficient, GasSideResistance, drivingForce}},
+		{boilingEquilibrium, equilibrium},
+		{vapourPressure, []Number{EffectPressure, VapourSaturationTemperature}},
+		{steamPressure, []Number{SteamPressure, SteamTemperature}},
+		{chestTemperature, []Number{ChestTemperature, SteamTemperature}},
+		{temperatureDifference, []Number{drivingForce, ChestTemperature, BoilingTemperature}},
+		{productSolids, []Number{ProductSolids, SolidsOut}},
+		{productTemperature, []Number{ProductTemperature, BoilingTemperature}},
+		{evaporationSum, []Number{Evaporation, VapourFlow}},
+		{economyDefinition, []Number{Economy, VapourFlow, SteamFlow}},
+	}
+}
+
+// state holds a value for every number of the plant.
+type state [unknowns]float64
+
+// gradient holds the derivatives of one equation by every number.
+type gradient [unknowns]float64
+
+// temperatureSize is what a residual in K is measured against, so that its
+// tolerance stays above the rounding of absolute temperatures.
+const temperatureSize = 100
+
+// residual returns by how much an equation is not met, the size of its terms
+// to measure that against, and the derivatives.
+func residual(r relation, l *liquor.Liquor, v *state, d *gradient) (miss, size float64, err error) {
+	*d = gradient{}
+	switch r {
+	case massBalance:
+		// F = L + V (1 + e)
+		d[FeedFlow], d[ProductFlow] = 1, -1
+		d[VapourFlow], d[Entrainment] = -(1 + v[Entrainment]), -v[VapourFlow]
+		out := v[ProductFlow] + v[VapourFlow]*(1+v[Entrainment])
+		return v[FeedFlow] - out, math.Abs(v[FeedFlow]) + math.Abs(v[ProductFlow]) + math.Abs(v[VapourFlow]), nil
+
+	case solidsBalance:
+		// F wF = (L + e V) w
+		leaving := v[ProductFlow] + v[Entrainment]*v[VapourFlow]
+		d[FeedFlow], d[FeedSolids] = v[FeedSolids], v[FeedFlow]
+		d[ProductFlow], d[VapourFlow] = -v[SolidsOut], -v[Entrainment]*v[SolidsOut]
+		d[Entrainment], d[SolidsOut] = -v[VapourFlow]*v[SolidsOut], -leaving
+		in, out := v[FeedFlow]*v[FeedSolids], leaving*v[SolidsOut]
+		return in - out, math.Abs(in) + math.Abs(out) + 1e-6*(math.Abs(v[FeedFlow])+math.Abs(leaving)), nil
+
+	case energyBalance:
+		return energyResidual(l, v, d)
+
+	case chestBalance:
+		return chestResidual(v, d)
+
+	case rateEquation:
+		// Q = A dT U / (1 + U R)
+		by := 1 + v[Coefficient]*v[GasSideResistance]
+		u := v[Coefficient] / by
+		d[Duty] = 1
+		d[Area] = -u * v[drivingForce]
+		d[Coefficient] = -v[Area] * v[drivingForce] / (by * by)
+		d[GasSideResistance] = v[Area] * v[drivingForce] * u * u
+		d[drivingForce] = -u * v[Area]
+		q := u * v[Area] * v[drivingForce]
+		return v[Duty] - q, math.Abs(v[Duty]) + math.Abs(q), nil
+
+	case boilingEquilibrium:
+		rise, byW, byTw := l.Rise(v[SolidsOut], v[VapourSaturationTemperature])
+		d[BoilingTemperature], d[VapourSaturationTemperature], d[SolidsOut] = 1, -1-byTw, -byW
+		return v[BoilingTemperature] - v[VapourSaturationTemperature] - rise, temperatureSize, nil
+
+	case vapourPressure:
+		return saturationResidual(EffectPressure, VapourSaturationTemperature, v, d)
+
+	case steamPressure:
+		return saturationResidual(SteamPressure, SteamTemperature, v, d)
+
+	case chestTemperature:
+		d[ChestTemperature], d[SteamTemperature] = 1, -1
+		return v[ChestTemperature] - v[SteamTemperature], temperatureSize, nil
+
+	case temperatureDifference:
+		d[drivingForce], d[ChestTemperature], d[BoilingTemperature] = 1, -1, 1
+		return v[drivingForce] - v[ChestTemperature] + v[BoilingTemperature], temperatureSize, nil
+
+	case productSolids:
+		d[ProductSolids], d[SolidsOut] = 1, -1
+		return v[ProductSolids] - v[SolidsOut], 1, nil
+
+	case productTemperature:
+		d[ProductTemperature], d[BoilingTemperature] = 1, -1
+		return v[ProductTemperature] - v[BoilingTemperature], temperatureSize, nil
+
+	case evaporationSum:
+		d[Evaporation], d[VapourFlow] = 1, -1
+		return v[Evaporation] - v[VapourFlow], math.Abs(v[Evaporation]) + math.Abs(v[VapourFlow]), nil
+
+	default: // economyDefinition: V = economy S
+		d[VapourFlow], d[Economy], d[SteamFlow] = 1, -v[SteamFlow], -v[Economy]
+		made := v[Economy] * v[SteamFlow]
+		return v[VapourFlow] - made, math.Abs(v[VapourFlow]) + math.Abs(made), nil
+	}
+}
+
+// energyResidual: F hF + Q (1 - loss) = V Hv + (L + e V) hL.
+func energyResidual(l *liquor.Liquor, v *state, d *gradient) (miss, size float64, err error) {
+	hf, hfByW, hfByT := l.Enthalpy(v[FeedSolids], v[FeedTemperature])
+	hl, hlByW, hlByT := l.Enthalpy(v[SolidsOut], v[BoilingTemperature])
+	hv, hvByTw, hvByT, err := vapourEnthalpy(v[VapourSaturationTemperature], v[BoilingTemperature])
+	if err != nil {
+		return 0, 0, err
+	}
+	leaving := v[ProductFlow] + v[Entrainment]*v[VapourFlow]
+	d[FeedFlow] = hf
+	d[FeedSolids] = v[FeedFlow] * hfByW
+	d[FeedTemperature] = v[FeedFlow] * hfByT
+	d[Duty], d[HeatLoss] = 1-v[HeatLoss], -v[Duty]
+	d[VapourFlow] = -hv - v[Entrainment]*hl
+	d[VapourSaturationTemperature] = -v[VapourFlow] * hvByTw
+	d[BoilingTemperature] = -v[VapourFlow]*hvByT - leaving*hlByT
+	d[ProductFlow], d[Entrainment] = -hl, -v[VapourFlow]*hl
+	d[SolidsOut] = -leaving * hlByW
+	in := v[FeedFlow]*hf + v[Duty]*(1-v[HeatLoss])
+	out := v[VapourFlow]*hv + leaving*hl
+	size = math.Abs(v[FeedFlow]*hf) + math.Abs(v[Duty]) + math.Abs(v[VapourFlow]*hv) + math.Abs(leaving*hl)
+	return in - out, size, nil
+}
+
+// chestResidual: Q = S (1 - vent) (hS - hc).
+func chestResidual(v *state, d *gradient) (miss, size float64, err error) {
+	hs, by, err := liveSteamEnthalpy(v[SteamTemperature], v[Superheat], v[Dryness])
+	if err != nil {
+		return 0, 0, err
+	}
+	hc, hcByT, err := steam.LiquidEnthalpy(quantity.Temperature(max(v[ChestTemperature]-v[Subcooling], quantity.Zero)))
+	if err != nil {
+		return 0, 0, err
+	}
+	condensing := v[SteamFlow] * (1 - v[Vent])
+	q := condensing * (hs - hc)
+	d[Duty] = -1
+	d[SteamFlow] = (1 - v[Vent]) * (hs - hc)
+	d[Vent] = -v[SteamFlow] * (hs - hc)
+	d[SteamTemperature] = condensing * by.temperature
+	d[Superheat] = condensing * by.superheat
+	d[Dryness] = condensing * by.dryness
+	d[ChestTemperature], d[Subcooling] = -condensing*hcByT, condensing*hcByT
+	return q - v[Duty], math.Abs(q) + math.Abs(v[Duty]), nil
+}
+
+// saturationResidual: ln p = ln psat(t), which is nearly straight in 1/t.
+func saturationResidual(p, t Number, v *state, d *gradient) (miss, size float64, err error) {
+	saturation, err := steam.SaturationPressure(quantity.Temperature(v[t]))
+	if err != nil {
+		return 0, 0, err
+	}
+	slope, err := steam.SaturationSlope(quantity.Temperature(v[t]))
+	if err != nil {
+		return 0, 0, err
+	}
+	d[p], d[t] = 1/v[p], -slope/float64(saturation)
+	return math.Log(v[p] / float64(saturation)), 1, nil
+}
+
+// vapourEnthalpy is the enthalpy in J/kg of vapour at t and at the pressure
+// at which water boils at tw, both in K, with its derivatives.
+func vapourEnthalpy(tw, t float64) (h, byTw, byT float64, err error) {
+	p, err := steam.SaturationPressure(quantity.Temperature(tw))
+	if err != nil {
+		return 0, 0, 0, err
+	}
+	slope, err := steam.SaturationSlope(quantity.Temperature(tw))
+	if err != nil {
+		return 0, 0, 0, err
+	}
+	h, byP, byT, err := steam.VapourEnthalpy(p, quantity.Temperature(t))
+	return h, byP * slope, byT, err
+}
+
+type liveSteamSlopes struct{ temperature, superheat, dryness float64 }
+
+// liveSteamEnthalpy is the enthalpy in J/kg of steam with saturation
+// temperature ts in K: superheated vapour less the latent heat of the water
+// in it. Superheat and wetness never occur together in an answer, but a
+// solver may look for either.
+func liveSteamEnthalpy(ts, superheat, dryness float64) (h float64, by liveSteamSlopes, err error) {
+	hot, hotByTs, hotByT, err := vapourEnthalpy(ts, ts+superheat)
+	if err != nil {
+		return 0, by, err
+	}
+	dry, dryByTs, dryByT, err := vapourEnthalpy(ts, ts)
+	if err != nil {
+		return 0, by, err
+	}
+	wet, wetByTs, err := steam.LiquidEnthalpy(quantity.Temperature(ts))
+	if err != nil {
+		return 0, by, err
+	}
+	by.temperature = hotByTs + hotByT - (1-dryness)*(dryByTs+dryByT-wetByTs)
+	by.superheat = hotByT
+	by.dryness = dry - wet
+	return hot - (1-dryness)*(dry-wet), by, nil
+}

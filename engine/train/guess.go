@@ -1,0 +1,139 @@
+package train
+
+import (
+	"math"
+
+	"calandria.example/calandria/engine/quantity"
+	"calandria.example/calandria/engine/steam"
+)
+
+// strengths are where between the feed's solids and dry solids the attempts
+// start to look for the product: first from both ends of what is possible.
+var strengths = [starts]float64{0.05, 0.9, 0.5, 0.2}
+
+// guess sets first values for the numbers of a block: what the numbers
+// already known imply, completed by what is usual.
+func (s *search) guess(b *block, index, attempt int, v *state) {
+	w := *v
+	known := func(n Number) bool { return !math.IsNaN(w[n]) }
+	set := func(n Number, value float64) {
+		if !known(n) && !math.IsNaN(value) && !math.IsInf(value, 0) {
+			w[n] = value
+		}
+	}
+	tie := func(a, c Number) {
+		set(a, w[c])
+		set(c, w[a])
+	}
+	boilingAt := func(p, t Number) {
+		if known(p) {
+			if saturation, err := steam.SaturationTemperature(quantity.Pressure(w[p])); err == nil {
+				set(t, float64(saturation))
+			}
+		}
+	}
+	const (
+		usualForce = 20.0    // K
+		latent     = 2.25e6  // J/kg
+		usualHeat  = 3.8e3   // J/(kg K)
+		usualU     = 1.5e3   // W/(m2 K)
+		usualSize  = 1.0     // kg/s
+		hotDryness = 2.675e6 // J/kg, vapour near 100 degC
+	)
+
+	// Solids.
+	tie(ProductSolids, SolidsOut)
+	if !known(FeedSolids) {
+		set(FeedSolids, w[SolidsOut]*(1-strengths[attempt]))
+		set(FeedSolids, 0.1)
+	}
+	if known(FeedFlow) && known(ProductFlow) && w[ProductFlow] > 0 {
+		set(SolidsOut, math.Min(0.99, w[FeedFlow]*w[FeedSolids]/w[ProductFlow]))
+	}
+	set(SolidsOut, w[FeedSolids]+(1-w[FeedSolids])*strengths[attempt])
+	tie(ProductSolids, SolidsOut)
+
+	// Temperatures.
+	tie(ProductTemperature, BoilingTemperature)
+	boilingAt(EffectPressure, VapourSaturationTemperature)
+	boilingAt(SteamPressure, SteamTemperature)
+	tie(SteamTemperature, ChestTemperature)
+	if known(VapourSaturationTemperature) {
+		rise, _, _ := s.question.liquor.Rise(w[SolidsOut], w[VapourSaturationTemperature])
+		set(BoilingTemperature, w[VapourSaturationTemperature]+math.Max(rise, 0))
+	}
+	force := usualForce
+	if known(Duty) && known(Area) && known(Coefficient) {
+		force = w[Duty] / (w[Area] * w[Coefficient])
+	}
+	if known(drivingForce) {
+		force = w[drivingForce]
+	}
+	force = math.Min(math.Max(force, 0.1), 100) * (1 + float64(attempt)/2)
+	set(BoilingTemperature, w[ChestTemperature]-force)
+	set(BoilingTemperature, quantity.Zero+80)
+	set(ChestTemperature, w[BoilingTemperature]+force)
+	tie(SteamTemperature, ChestTemperature)
+	if !known(VapourSaturationTemperature) {
+		rise, _, _ := s.question.liquor.Rise(w[SolidsOut], w[BoilingTemperature])
+		set(VapourSaturationTemperature, w[BoilingTemperature]-math.Max(rise, 0))
+	}
+	for _, n := range [...]Number{BoilingTemperature, ChestTemperature, SteamTemperature, VapourSaturationTemperature} {
+		w[n] = math.Min(math.Max(w[n], coldest+1), hottest-1)
+	}
+	tie(ProductTemperature, BoilingTemperature)
+	set(FeedTemperature, math.Max(w[BoilingTemperature]-usualForce, coldest+1))
+	set(drivingForce, w[ChestTemperature]-w[BoilingTemperature])
+	for _, pair := range [...][2]Number{{EffectPressure, VapourSaturationTemperature}, {SteamPressure, SteamTemperature}} {
+		if p, err := steam.SaturationPressure(quantity.Temperature(w[pair[1]])); err == nil {
+			set(pair[0], float64(p))
+		}
+	}
+
+	// Flows: whichever is known sets the size of the others.
+	tie(Evaporation, VapourFlow)
+	ratio := 1 - w[FeedSolids]/math.Max(w[SolidsOut], 1e-6)
+	if !(ratio > 0.01) {
+		ratio = 0.01
+	}
+	if known(Area) && known(Coefficient) {
+		set(Duty, w[Area]*w[Coefficient]*math.Max(w[drivingForce], 1))
+	}
+	if known(SteamFlow) {
+		set(Duty, w[SteamFlow]*latent)
+	}
+	set(VapourFlow, w[Economy]*w[SteamFlow])
+	if known(FeedFlow) {
+		set(VapourFlow, w[FeedFlow]-w[ProductFlow])
+		set(VapourFlow, w[FeedFlow]*ratio)
+	}
+	if known(ProductFlow) {
+		set(VapourFlow, w[ProductFlow]*ratio/math.Max(1-ratio, 0.01))
+	}
+	warming := usualHeat * (w[BoilingTemperature] - w[FeedTemperature]) / ratio
+	perVapour := math.Max(latent+warming, 0.1*latent)
+	set(VapourFlow, w[Duty]/perVapour)
+	set(VapourFlow, usualSize)
+	set(FeedFlow, w[VapourFlow]/ratio)
+	set(ProductFlow, math.Max(w[FeedFlow]-w[VapourFlow], 1e-3*w[FeedFlow]))
+	set(Duty, w[VapourFlow]*perVapour)
+	set(SteamFlow, w[Duty]/latent)
+	tie(Evaporation, VapourFlow)
+	set(Economy, w[VapourFlow]/w[SteamFlow])
+	set(Coefficient, w[Duty]/(w[Area]*math.Max(w[drivingForce], 0.1)))
+	set(Coefficient, usualU)
+	set(Area, w[Duty]/(w[Coefficient]*math.Max(w[drivingForce], 0.1)))
+
+	// What usually takes its default, when it is sought.
+	set(Dryness, 0.95)
+	set(Superheat, 10)
+	set(Subcooling, 5)
+	set(HeatLoss, 0.02)
+	set(Vent, 0.02)
+	set(Entrainment, 0.01)
+	set(GasSideResistance, 1e-5)
+
+	for _, n := range b.numbers {
+		v[n] = w[n]
+	}
+}

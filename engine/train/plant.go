@@ -1,0 +1,119 @@
+package train
+
+import (
+	"errors"
+	"math"
+	"strconv"
+
+	"calandria.example/calandria/engine/evidence"
+	"calandria.example/calandria/engine/fault"
+	"calandria.example/calandria/engine/liquor"
+	"calandria.example/calandria/engine/quantity"
+)
+
+// Given is a number that a question fixes, in SI units.
+type Given struct {
+	Number Number
+	Value  float64
+}
+
+// Plant is a question about one effect: what is concentrated, the numbers
+// that are fixed, and those to solve for that would otherwise take their
+// default.
+type Plant struct {
+	Liquor *liquor.Liquor
+	Given  []Given
+	Find   []Number
+}
+
+// Closure is by how much the balances fail to close, relative to what enters,
+// computed from the answer apart from the solver.
+type Closure struct {
+	Mass, Solids, Energy float64
+}
+
+// Answer holds every number of the plant, in SI units.
+type Answer struct {
+	Value    [numbers]float64 // by Number
+	Defaults []Given          // what took its default
+
+	Rise                  float64 // K, boiling-point rise
+	DrivingForce          float64 // K
+	VapourEnthalpy        float64 // J/kg
+	Condensate            float64 // kg/s
+	CondensateTemperature float64 // K
+	HeatLossRate          float64 // W
+	VentFlow              float64 // kg/s
+	Entrained             float64 // kg/s
+
+	Closure    Closure
+	Advisories []evidence.Advisory
+	Models     []evidence.Model
+}
+
+// question is a plant with every number known to be fixed or sought.
+type question struct {
+	liquor    *liquor.Liquor
+	equations []equation
+	fixed     [unknowns]bool
+	byDefault [unknowns]bool
+	value     state // NaN where not fixed
+}
+
+func newQuestion(p Plant) (*question, error) {
+	q := &question{liquor: p.Liquor, equations: equationsOf(p.Liquor)}
+	for n := range unknowns {
+		q.value[n] = math.NaN()
+	}
+	var problems []error
+	complain := func(n Number, value, limit, wayOut string) {
+		problems = append(problems, &fault.Invalid{Field: n.Path(), Value: value, Limit: limit, WayOut: wayOut})
+	}
+	for _, g := range p.Given {
+		low, high := bounds(g.Number)
+		if details[g.Number].kind == temperature {
+			low = quantity.Zero
+		}
+		shown := strconv.FormatFloat(g.Value, 'g', -1, 64) + " " + details[g.Number].unit
+		switch {
+		case math.IsNaN(g.Value) || math.IsInf(g.Value, 0):
+			complain(g.Number, shown, "a finite number", "leave it out to have it solved for")
+		case !(g.Value >= low && g.Value <= high):
+			problems = append(problems, &fault.Range{Quantity: g.Number.Path(), Unit: details[g.Number].unit, Source: "physical limits of the effect model", Value: g.Value, Min: low, Max: high})
+		case q.fixed[g.Number]:
+			complain(g.Number, "given twice", "once", "drop one of the two")
+		}
+		q.fixed[g.Number], q.value[g.Number] = true, g.Value
+	}
+	for _, n := range p.Find {
+		if _, ok := defaultOf(n); !ok {
+			complain(n, "in find", "only numbers that have a default", "leave it out: what is left out is solved for")
+		}
+		if q.fixed[n] {
+			complain(n, "given and in find", "one of the two", "drop its value, or drop it from find")
+		}
+	}
+	if q.fixed[Superheat] && q.value[Superheat] > 0 && q.fixed[Dryness] && q.value[Dryness] < 1 {
+		complain(Dryness, strconv.FormatFloat(q.value[Dryness], 'g', -1, 64), "1 for superheated steam", "give superheat_k or a dryness below 1, not both")
+	}
+	if len(problems) > 0 {
+		return nil, errors.Join(problems...)
+	}
+	for n := range numbers {
+		value, ok := defaultOf(n)
+		if !ok || q.fixed[n] || contains(p.Find, n) {
+			continue
+		}
+		q.fixed[n], q.byDefault[n], q.value[n] = true, true, value
+	}
+	return q, nil
+}
+
+func contains(list []Number, n Number) bool {
+	for _, m := range list {
+		if m == n {
+			return true
+		}
+	}
+	return false
+}

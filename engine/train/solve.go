@@ -1,0 +1,397 @@
+package train
+
+import (
+	"fmt"
+	"math"
+
+	"calandria.example/calandria/engine/fault"
+	"calandria.example/calandria/engine/numeric"
+)
+
+const (
+	tolerance     = 1e-11 // of an equation's own terms
+	iterationsMax = 80    // of one Newton run
+	singular      = 1e-11 // pivot ratio below which equations depend on each other
+	starts        = 4     // sets of first guesses tried for each block
+	branchesMax   = 4     // whole answers looked at
+)
+
+// Solve answers p. It refuses with *fault.Invalid or *fault.Range what can
+// not be meant, with *fault.Specification too many or too few given numbers,
+// with *fault.Infeasible what no plant can meet and with *fault.NotConverged
+// what it could not decide. Errors may be joined. An answer closes its
+// balances to 1e-9 and is physical.
+func Solve(p Plant) (*Answer, error) {
+	q, err := newQuestion(p)
+	if err != nil {
+		return nil, err
+	}
+	blocks, err := q.blocks()
+	if err != nil {
+		return nil, err
+	}
+	s := search{question: q, blocks: blocks, physical: true}
+	s.from(0, q.value)
+	if len(s.found) == 0 {
+		return nil, s.refusal()
+	}
+	best := 0
+	for i := range s.found {
+		if s.found[i][SolidsOut] < s.found[best][SolidsOut] {
+			best = i
+		}
+	}
+	return q.answer(&s.found[best], s.found)
+}
+
+// search walks the blocks of a question. Where a block has two roots both are
+// followed to the end.
+type search struct {
+	question *question
+	blocks   []block
+	physical bool    // keep to what is physically possible
+	found    []state // whole answers
+	dead     []state // states at which a walk ended
+
+	iterations int     // of all Newton runs
+	residual   float64 // least of the worst residuals of failed runs
+	where      relation
+	dependent  *fault.Specification // set when equations turned out to depend on each other
+}
+
+func (s *search) from(i int, v state) {
+	if len(s.found) >= branchesMax {
+		return
+	}
+	if i == len(s.blocks) {
+		if s.physical && unphysical(&v, s.question) != nil {
+			s.dead = append(s.dead, v)
+			return
+		}
+		s.found = append(s.found, v)
+		return
+	}
+	b := &s.blocks[i]
+	var roots []state
+	for attempt := range starts {
+		root := v
+		s.guess(b, i, attempt, &root)
+		if !s.newton(b, &root) {
+			continue
+		}
+		isNew := true
+		for r := range roots {
+			isNew = isNew && !same(b, &roots[r], &root)
+		}
+		if isNew {
+			roots = append(roots, root)
+		}
+		if b.plain() {
+			break
+		}
+	}
+	if len(roots) == 0 {
+		s.dead = append(s.dead, v)
+	}
+	for r := range roots {
+		s.from(i+1, roots[r])
+	}
+}
+
+// plain reports whether a block has one root at most: a single equation that
+// is linear in its number, or a balance of flows.
+func (b *block) plain() bool {
+	for _, n := range b.numbers {
+		switch details[n].kind {
+		case fraction, temperature, pressure:
+			return false
+		}
+	}
+	return len(b.numbers) == 1
+}
+
+func same(b *block, a, c *state) bool {
+	for _, n := range b.numbers {
+		if math.Abs(a[n]-c[n]) > 1e-6*(math.Abs(a[n])+math.Abs(c[n])+1e-9) {
+			return false
+		}
+	}
+	return true
+}
+
+// newton solves one block from the values in v. It keeps every number inside
+// of what its properties allow, and if the search is physical, inside of what
+// is possible at all.
+func (s *search) newton(b *block, v *state) bool {
+	n := len(b.numbers)
+	jacobian := make([][]float64, n)
+	for i := range jacobian {
+		jacobian[i] = make([]float64, n)
+	}
+	step, sizes := make([]float64, n), make([]float64, n)
+	worst, where, err := s.evaluate(b, v, jacobian, step, sizes)
+	if err != nil {
+		return false
+	}
+	polished := false
+	for range iterationsMax {
+		s.iterations++
+		if worst <= tolerance {
+			if polished {
+				break
+			}
+			// One more step costs little and takes the rest of the error.
+			polished = true
+		}
+		ratio := numeric.Solve(jacobian, step)
+		if !(ratio > singular) {
+			if worst <= tolerance {
+				s.dependent = &fault.Specification{Missing: 1, Closers: s.question.paths(b)}
+			}
+			return s.fail(worst, where)
+		}
+		next, ok := s.advance(b, v, step, sizes, worst)
+		if !ok {
+			if worst <= tolerance {
+				break
+			}
+			return s.fail(worst, where)
+		}
+		*v = next
+		worst, where, err = s.evaluate(b, v, jacobian, step, sizes)
+		if err != nil {
+			return false
+		}
+	}
+	if !(worst <= tolerance) {
+		return s.fail(worst, where)
+	}
+	return true
+}
+
+func (s *search) fail(worst float64, where relation) bool {
+	if s.residual == 0 || worst < s.residual {
+		s.residual, s.where = worst, where
+	}
+	return false
+}
+
+func (q *question) paths(b *block) []string {
+	var paths []string
+	for _, n := range b.numbers {
+		if n < numbers {
+			paths = append(paths, n.Path())
+		}
+	}
+	return paths
+}
+
+// evaluate fills the scaled Jacobian and the scaled negative residuals of a
+// block. Columns are scaled by how far a number is expected to move.
+func (s *search) evaluate(b *block, v *state, jacobian [][]float64, step, sizes []float64) (worst float64, where relation, err error) {
+	var d gradient
+	for i := range b.equations {
+		miss, size, err := residual(b.equations[i].relation, s.question.liquor, v, &d)
+		if err != nil {
+			return 0, 0, err
+		}
+		if size == 0 {
+			size = 1
+		}
+		sizes[i] = size
+		step[i] = -miss / size
+		if r := math.Abs(step[i]); !(r <= worst) {
+			worst, where = r, b.equations[i].relation
+		}
+		for j, n := range b.numbers {
+			jacobian[i][j] = d[n] * reach(n, v) / size
+		}
+	}
+	return worst, where, nil
+}
+
+// reach is a typical change of a number, to scale steps and columns by.
+func reach(n Number, v *state) float64 {
+	switch details[n].kind {
+	case temperature, difference:
+		return 10
+	case fraction:
+		return 0.1
+	case resistance:
+		return 1e-3
+	default:
+		return math.Max(math.Abs(v[n]), 1e-9)
+	}
+}
+
+// advance takes as much of a Newton step as bounds and descent allow.
+func (s *search) advance(b *block, v *state, step, sizes []float64, worst float64) (next state, ok bool) {
+	const (
+		farthest = 3   // typical changes in one step, for numbers that properties depend on
+		toBound  = 0.9 // of the way to a bound
+		halvings = 30
+	)
+	length := 1.0
+	for j, n := range b.numbers {
+		change := step[j] * reach(n, v)
+		if math.IsNaN(change) || math.IsInf(change, 0) {
+			return next, false
+		}
+		k := details[n].kind
+		if k == temperature || k == fraction {
+			if far := math.Abs(step[j]); far > farthest {
+				length = math.Min(length, farthest/far)
+			}
+		}
+		if !s.physical && k != temperature && k != pressure && n != SolidsOut && n != FeedSolids {
+			continue
+		}
+		low, high := bounds(n)
+		if change < 0 && v[n]+change*length < low {
+			length = math.Min(length, toBound*(v[n]-low)/-change)
+		}
+		if change > 0 && v[n]+change*length > high {
+			length = math.Min(length, toBound*(high-v[n])/change)
+		}
+	}
+	var d gradient
+	for range halvings {
+		next = *v
+		for j, n := range b.numbers {
+			next[n] = v[n] + length*step[j]*reach(n, v)
+		}
+		largest, valid := 0.0, true
+		for i := range b.equations {
+			miss, _, err := residual(b.equations[i].relation, s.question.liquor, &next, &d)
+			if err != nil {
+				valid = false
+				break
+			}
+			largest = math.Max(largest, math.Abs(miss)/sizes[i])
+		}
+		if valid && (largest < worst*(1-1e-4*length) || largest <= tolerance/10) {
+			return next, true
+		}
+		length /= 2
+	}
+	return next, false
+}
+
+// refusal finds the words for a question without a physical answer: what the
+// walks ran into, or failing that the answer that the equations have when
+// physical limits are set aside.
+func (s *search) refusal() error {
+	for i := range s.dead {
+		if why := impossible(&s.dead[i], s.question); why != nil {
+			return why
+		}
+	}
+	free := search{question: s.question, blocks: s.blocks}
+	free.from(0, s.question.value)
+	for i := range free.found {
+		if why := unphysical(&free.found[i], s.question); why != nil {
+			return why
+		}
+	}
+	for i := range free.dead {
+		if why := impossible(&free.dead[i], s.question); why != nil {
+			return why
+		}
+	}
+	if s.dependent != nil {
+		return s.dependent
+	}
+	return &fault.NotConverged{Iterations: s.iterations + free.iterations, Residual: s.residual, Where: relationNames[s.where]}
+}
+
+// impossible looks at a walk that ended early: if the temperatures that were
+// already found leave no driving force, or the flows ask for the wrong
+// direction, that is the reason.
+func impossible(v *state, q *question) error {
+	known := func(n Number) bool { return !math.IsNaN(v[n]) }
+	if known(ChestTemperature) && known(BoilingTemperature) && v[ChestTemperature] <= v[BoilingTemperature] {
+		return noDrivingForce(v)
+	}
+	if known(ChestTemperature) && known(VapourSaturationTemperature) {
+		// The rise at the feed's solids is the least that the product can have.
+		solids := v[FeedSolids]
+		if known(SolidsOut) {
+			solids = v[SolidsOut]
+		}
+		if !math.IsNaN(solids) || !q.liquor.RiseDependsOnSolids() {
+			rise, _, _ := q.liquor.Rise(solids, v[VapourSaturationTemperature])
+			if short := v[VapourSaturationTemperature] + rise - v[ChestTemperature]; short >= 0 {
+				lowest := *v
+				lowest[BoilingTemperature] = v[VapourSaturationTemperature] + rise
+				return noDrivingForce(&lowest)
+			}
+		}
+	}
+	if known(FeedSolids) && known(SolidsOut) && v[SolidsOut] < v[FeedSolids] {
+		return weakerProduct(v)
+	}
+	if known(FeedFlow) && known(ProductFlow) && v[ProductFlow] > v[FeedFlow] {
+		return &fault.Infeasible{
+			Effect: "effect", Cause: fault.NegativeEvaporation, Field: VapourFlow.Path(), Amount: v[ProductFlow] - v[FeedFlow], Unit: "kg/s",
+			Detail: fmt.Sprintf("More liquor would leave (%.6g kg/s) than enters (%.6g kg/s).", v[ProductFlow], v[FeedFlow]),
+		}
+	}
+	return nil
+}
+
+func noDrivingForce(v *state) error {
+	short := v[BoilingTemperature] - v[ChestTemperature]
+	return &fault.Infeasible{
+		Effect: "effect", Cause: fault.NoDrivingForce, Field: drivingForce.Path(), Amount: short, Unit: "K",
+		Detail: fmt.Sprintf("The liquor would boil at %.2f degC but the chest condenses at %.2f degC: the driving force is short by %.2f K.", v[BoilingTemperature]-273.15, v[ChestTemperature]-273.15, short),
+	}
+}
+
+func weakerProduct(v *state) error {
+	return &fault.Infeasible{
+		Effect: "effect", Cause: fault.WeakerProduct, Field: ProductSolids.Path(), Amount: v[FeedSolids] - v[SolidsOut], Unit: "",
+		Detail: fmt.Sprintf("The product (solids %.6g kg/kg) would be weaker than the feed (%.6g kg/kg).", v[SolidsOut], v[FeedSolids]),
+	}
+}
+
+// unphysical returns the first reason why a whole answer can not be a plant.
+func unphysical(v *state, q *question) error {
+	const rounding = 1e-9
+	if v[drivingForce] <= 0 {
+		return noDrivingForce(v)
+	}
+	if v[SolidsOut] < v[FeedSolids]*(1-rounding) {
+		return weakerProduct(v)
+	}
+	if v[VapourFlow] < -rounding*math.Abs(v[FeedFlow]) {
+		return &fault.Infeasible{
+			Effect: "effect", Cause: fault.NegativeEvaporation, Field: VapourFlow.Path(), Amount: -v[VapourFlow], Unit: "kg/s",
+			Detail: fmt.Sprintf("Evaporation would be negative: %.6g kg/s.", v[VapourFlow]),
+		}
+	}
+	for n := range unknowns {
+		if q.fixed[n] {
+			continue
+		}
+		low, high := bounds(n)
+		slack := rounding * math.Max(1, math.Abs(v[n]))
+		strictlyAbove := details[n].kind == positive || n == FeedFlow || n == ProductFlow || n == SteamFlow
+		if v[n] < low-slack || v[n] > high+slack || math.IsNaN(v[n]) || strictlyAbove && v[n] <= 0 {
+			cause, amount := fault.OutOfBounds, math.Max(low-v[n], v[n]-high)
+			if v[n] <= 0 && low == 0 {
+				cause, amount = fault.NegativeFlow, -v[n]
+			}
+			return &fault.Infeasible{
+				Effect: "effect", Cause: cause, Field: n.Path(), Amount: amount, Unit: details[n].unit,
+				Detail: fmt.Sprintf("%s would have to be %.6g %s; possible is %.6g to %.6g.", n.Path(), v[n], details[n].unit, low, high),
+			}
+		}
+	}
+	if v[Superheat] > rounding && v[Dryness] < 1-rounding {
+		return &fault.Infeasible{
+			Effect: "effect", Cause: fault.OutOfBounds, Field: Dryness.Path(), Amount: 1 - v[Dryness], Unit: "",
+			Detail: fmt.Sprintf("The live steam would have to be wet (dryness %.6g) and superheated (by %.6g K) at once.", v[Dryness], v[Superheat]),
+		}
+	}
+	return nil
+}

@@ -1,0 +1,108 @@
+package train
+
+import (
+	"calandria.example/calandria/engine/fault"
+	"calandria.example/calandria/engine/numeric"
+)
+
+// block is a group of equations that must be solved together, with the
+// numbers that they determine.
+type block struct {
+	equations []equation
+	numbers   []Number
+}
+
+// graph is the bipartite graph between the equations and the numbers that
+// fixed leaves open. column tells which number a column is.
+func (q *question) graph(fixed *[unknowns]bool) (g numeric.Graph, column []Number) {
+	var index [unknowns]int
+	for n := range unknowns {
+		index[n] = -1
+		if !fixed[n] {
+			index[n] = len(column)
+			column = append(column, n)
+		}
+	}
+	g.Columns = len(column)
+	g.Rows = make([][]int, len(q.equations))
+	for i, e := range q.equations {
+		for _, n := range e.in {
+			if index[n] >= 0 {
+				g.Rows[i] = append(g.Rows[i], index[n])
+			}
+		}
+	}
+	return g, column
+}
+
+// overdetermined reports whether some equations have no number left to
+// determine when the numbers marked in fixed are known.
+func (q *question) overdetermined(fixed *[unknowns]bool) bool {
+	g, _ := q.graph(fixed)
+	rows, _ := g.Match().Unmatched()
+	return rows > 0
+}
+
+// blocks splits the question into groups that are solved one after the other,
+// or says what is too much or too little.
+func (q *question) blocks() ([]block, error) {
+	g, column := q.graph(&q.fixed)
+	m := g.Match()
+	rows, columns := m.Unmatched()
+	if rows > 0 {
+		return nil, &fault.Specification{Over: true, Conflict: q.conflict()}
+	}
+	if columns > 0 {
+		return nil, &fault.Specification{Missing: columns, Closers: q.closers(g, m, column)}
+	}
+	groups := g.Blocks(m)
+	blocks := make([]block, len(groups))
+	for i, group := range groups {
+		for _, row := range group {
+			blocks[i].equations = append(blocks[i].equations, q.equations[row])
+			blocks[i].numbers = append(blocks[i].numbers, column[m.Column[row]])
+		}
+	}
+	return blocks, nil
+}
+
+// conflict returns an irreducible set of given fields that contradict or
+// repeat each other: each is dropped in turn and stays dropped if the rest
+// still conflicts. Defaults are not the caller's words and stay.
+func (q *question) conflict() []string {
+	fixed := q.fixed
+	for n := range numbers {
+		if !fixed[n] || q.byDefault[n] {
+			continue
+		}
+		fixed[n] = false
+		if !q.overdetermined(&fixed) {
+			fixed[n] = true
+		}
+	}
+	var paths []string
+	for n := range numbers {
+		if fixed[n] && !q.byDefault[n] {
+			paths = append(paths, n.Path())
+		}
+	}
+	return paths
+}
+
+// closers returns the fields of which any one closes a gap: those of the
+// under-determined part that can be fixed without a conflict.
+func (q *question) closers(g numeric.Graph, m numeric.Matching, column []Number) []string {
+	under := g.Under(m)
+	var paths []string
+	for c, n := range column {
+		if !under[c] || n >= numbers {
+			continue
+		}
+		fixed := q.fixed
+		fixed[n] = true
+		if !q.overdetermined(&fixed) {
+			paths = append(paths, n.Path())
+		}
+	}
+	return paths
+}
