@@ -19,7 +19,7 @@ type Fault interface {
 // so that a result would be meaningless.
 type Range struct {
 	Quantity string  // what the value is, such as "temperature"
-	Unit     string  // SI unit of Value, Min and Max, "" for a fraction
+	Unit     string  // SI unit of Value, Min and Max; "" for a fraction, "K difference" for a difference
 	Source   string  // equation or release that sets the limits
 	Value    float64 // what was asked
 	Min, Max float64 // the limits; both included
@@ -88,7 +88,7 @@ type Infeasible struct {
 	Cause  Cause   // why
 	Field  string  // the quantity that shows it, by its field name
 	Amount float64 // by how much, in Unit
-	Unit   string  // SI unit of Amount
+	Unit   string  // SI unit of Amount; "K difference" for temperatures
 	Detail string  // one sentence for a person, with the figures in SI
 }
 

@@ -58,7 +58,7 @@ func (q *question) check(v *state, a *Answer) error {
 	}
 	if a.CondensateTemperature < quantity.Zero {
 		return &fault.Infeasible{
-			Effect: "effect", Cause: fault.OutOfBounds, Field: Subcooling.Path(), Amount: quantity.Zero - a.CondensateTemperature, Unit: "K",
+			Effect: "effect", Cause: fault.OutOfBounds, Field: Subcooling.Path(), Amount: quantity.Zero - a.CondensateTemperature, Unit: "K difference",
 			Detail: fmt.Sprintf("The condensate would leave at %.2f degC, below its freezing point.", a.CondensateTemperature-quantity.Zero),
 		}
 	}

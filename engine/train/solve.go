@@ -333,7 +333,7 @@ func impossible(v *state, q *question) error {
 	if known(FeedFlow) && known(ProductFlow) && v[ProductFlow] > v[FeedFlow] {
 		return &fault.Infeasible{
 			Effect: "effect", Cause: fault.NegativeEvaporation, Field: VapourFlow.Path(), Amount: v[ProductFlow] - v[FeedFlow], Unit: "kg/s",
-			Detail: fmt.Sprintf("More liquor would leave (%.6g kg/s) than enters (%.6g kg/s).", v[ProductFlow], v[FeedFlow]),
+			Detail: "More liquor would leave than enters.",
 		}
 	}
 	return nil
@@ -342,7 +342,7 @@ func impossible(v *state, q *question) error {
 func noDrivingForce(v *state) error {
 	short := v[BoilingTemperature] - v[ChestTemperature]
 	return &fault.Infeasible{
-		Effect: "effect", Cause: fault.NoDrivingForce, Field: drivingForce.Path(), Amount: short, Unit: "K",
+		Effect: "effect", Cause: fault.NoDrivingForce, Field: drivingForce.Path(), Amount: short, Unit: "K difference",
 		Detail: fmt.Sprintf("The liquor would boil at %.2f degC but the chest condenses at %.2f degC: the driving force is short by %.2f K.", v[BoilingTemperature]-273.15, v[ChestTemperature]-273.15, short),
 	}
 }
@@ -366,7 +366,7 @@ func unphysical(v *state, q *question) error {
 	if v[VapourFlow] < -rounding*math.Abs(v[FeedFlow]) {
 		return &fault.Infeasible{
 			Effect: "effect", Cause: fault.NegativeEvaporation, Field: VapourFlow.Path(), Amount: -v[VapourFlow], Unit: "kg/s",
-			Detail: fmt.Sprintf("Evaporation would be negative: %.6g kg/s.", v[VapourFlow]),
+			Detail: "The liquor would take up water instead of giving it off.",
 		}
 	}
 	for n := range unknowns {
@@ -378,12 +378,17 @@ func unphysical(v *state, q *question) error {
 		strictlyAbove := details[n].kind == positive || n == FeedFlow || n == ProductFlow || n == SteamFlow
 		if v[n] < low-slack || v[n] > high+slack || math.IsNaN(v[n]) || strictlyAbove && v[n] <= 0 {
 			cause, amount := fault.OutOfBounds, math.Max(low-v[n], v[n]-high)
+			words := "would lie outside of what is possible"
 			if v[n] <= 0 && low == 0 {
-				cause, amount = fault.NegativeFlow, -v[n]
+				cause, amount, words = fault.NegativeFlow, -v[n], "would not be positive"
+			}
+			unit := details[n].unit
+			if unit == "K" {
+				unit = "K difference"
 			}
 			return &fault.Infeasible{
-				Effect: "effect", Cause: cause, Field: n.Path(), Amount: amount, Unit: details[n].unit,
-				Detail: fmt.Sprintf("%s would have to be %.6g %s; possible is %.6g to %.6g.", n.Path(), v[n], details[n].unit, low, high),
+				Effect: "effect", Cause: cause, Field: n.Path(), Amount: amount, Unit: unit,
+				Detail: n.Path() + " " + words + ".",
 			}
 		}
 	}

@@ -1,0 +1,274 @@
+package gateway
+
+import (
+	"bytes"
+	"encoding/json"
+	"errors"
+	"fmt"
+	"io"
+	"regexp"
+	"strconv"
+	"unicode/utf8"
+
+	"google.golang.org/protobuf/reflect/protoreflect"
+	"google.golang.org/protobuf/types/dynamicpb"
+
+	calandriav1 "calandria.example/calandria/proto/calandria/v1"
+)
+
+// checkBody reads a JSON body strictly against a message and returns all that
+// is wrong with it.
+func checkBody(body []byte, d protoreflect.MessageDescriptor, depthMax int) []*calandriav1.Violation {
+	b := &bodyCheck{body: body, depthMax: depthMax}
+	if len(bytes.TrimSpace(body)) == 0 {
+		b.add("", "empty", "a JSON object", "Send the request as JSON.")
+		return b.violations
+	}
+	if !utf8.Valid(body) {
+		b.add("", "not UTF-8 text", "JSON in UTF-8", "Save or send the text as UTF-8.")
+		return b.violations
+	}
+	b.tokens = json.NewDecoder(bytes.NewReader(body))
+	b.tokens.UseNumber()
+	m := dynamicpb.NewMessage(d)
+	if err := b.document(m); err != nil {
+		b.syntax(err)
+	}
+	b.rules(m)
+	return b.violations
+}
+
+type bodyCheck struct {
+	check
+	body     []byte
+	tokens   *json.Decoder
+	depthMax int
+}
+
+// errTooDeep ends a walk; the complaint is already made.
+var errTooDeep = errors.New("too deep")
+
+func (b *bodyCheck) document(m *dynamicpb.Message) error {
+	first, err := b.tokens.Token()
+	if err != nil {
+		return err
+	}
+	if first != json.Delim('{') {
+		b.add("", kindOf(first), "a JSON object", "Send one object in braces.")
+		return nil
+	}
+	if err := b.object(m, "", 1); err != nil {
+		return err
+	}
+	if _, err := b.tokens.Token(); !errors.Is(err, io.EOF) {
+		b.add("", "followed by more data", "one JSON object and nothing after it", "Send one request at a time.")
+	}
+	return nil
+}
+
+// object reads the rest of an object whose brace is open.
+func (b *bodyCheck) object(m *dynamicpb.Message, path string, depth int) error {
+	if depth > b.depthMax {
+		return b.tooDeep(path)
+	}
+	seen := map[string]bool{}
+	for b.tokens.More() {
+		key, err := b.tokens.Token()
+		if err != nil {
+			return err
+		}
+		name, ok := key.(string)
+		if !ok {
+			return &json.SyntaxError{}
+		}
+		field := b.field(m.Descriptor(), path, name)
+		full := join(path, clip(name))
+		if seen[name] {
+			b.add(full, "given twice", "once", "Drop one of the two.")
+		}
+		seen[name] = true
+		if field == nil {
+			if err := b.skip(depth); err != nil {
+				return err
+			}
+			continue
+		}
+		b.oneof(m, field, path)
+		if field.IsList() {
+			err = b.list(m, field, full, depth)
+		} else {
+			err = b.single(field, full, depth, func(v protoreflect.Value) { m.Set(field, v) })
+		}
+		if err != nil {
+			return err
+		}
+	}
+	_, err := b.tokens.Token() // the closing brace
+	return err
+}
+
+func (b *bodyCheck) list(m *dynamicpb.Message, field protoreflect.FieldDescriptor, path string, depth int) error {
+	if depth >= b.depthMax {
+		return b.tooDeep(path)
+	}
+	first, err := b.tokens.Token()
+	if err != nil {
+		return err
+	}
+	if first != json.Delim('[') {
+		b.add(path, kindOf(first), "a list in square brackets", "Put the values into [ ].")
+		return b.skipRest(first, depth)
+	}
+	list := m.Mutable(field).List()
+	for i := 0; b.tokens.More(); i++ {
+		err := b.single(field, fmt.Sprintf("%s[%d]", path, i), depth+1, func(v protoreflect.Value) { list.Append(v) })
+		if err != nil {
+			return err
+		}
+	}
+	_, err = b.tokens.Token() // the closing bracket
+	return err
+}
+
+// single reads one value of a field and hands it to set if it is right.
+func (b *bodyCheck) single(field protoreflect.FieldDescriptor, path string, depth int, set func(protoreflect.Value)) error {
+	token, err := b.tokens.Token()
+	if err != nil {
+		return err
+	}
+	if field.Kind() == protoreflect.MessageKind {
+		if token != json.Delim('{') {
+			b.add(path, kindOf(token), "an object in braces", "Its fields are "+fmt.Sprint(namesOf(field.Message()))+".")
+			return b.skipRest(token, depth)
+		}
+		inner := dynamicpb.NewMessage(field.Message())
+		if err := b.object(inner, path, depth+1); err != nil {
+			return err
+		}
+		set(protoreflect.ValueOfMessage(inner))
+		return nil
+	}
+	if token == nil {
+		b.add(path, "null", "a value", "Leave the field out to have it solved for.")
+		return nil
+	}
+	switch field.Kind() {
+	case protoreflect.DoubleKind:
+		switch v := token.(type) {
+		case json.Number:
+			if f, ok := b.number(field, path, v.String()); ok {
+				set(protoreflect.ValueOfFloat64(f))
+			}
+		case string:
+			if f, ok := b.number(field, path, v); ok {
+				b.add(path, strconv.Quote(clip(v)), "a plain number", "Write it without quotes: "+strconv.FormatFloat(f, 'g', -1, 64)+".")
+			}
+		default:
+			b.add(path, kindOf(token), "a number", "Write digits with a decimal point.")
+			return b.skipRest(token, depth)
+		}
+	case protoreflect.StringKind:
+		v, ok := token.(string)
+		if !ok {
+			b.add(path, kindOf(token), "a text in quotes", "Put it into quotes.")
+			return b.skipRest(token, depth)
+		}
+		set(protoreflect.ValueOfString(v))
+	default:
+		b.add(path, kindOf(token), "not in this request", "Leave it out.")
+		return b.skipRest(token, depth)
+	}
+	return nil
+}
+
+// skip passes over the next value.
+func (b *bodyCheck) skip(depth int) error {
+	token, err := b.tokens.Token()
+	if err != nil {
+		return err
+	}
+	return b.skipRest(token, depth)
+}
+
+// skipRest passes over the rest of a value whose first token is read.
+func (b *bodyCheck) skipRest(first json.Token, depth int) error {
+	open := 0
+	for token := first; ; {
+		switch token {
+		case json.Delim('{'), json.Delim('['):
+			open++
+			if depth+open > b.depthMax {
+				return b.tooDeep("")
+			}
+		case json.Delim('}'), json.Delim(']'):
+			open--
+		}
+		if open <= 0 {
+			return nil
+		}
+		var err error
+		if token, err = b.tokens.Token(); err != nil {
+			return err
+		}
+	}
+}
+
+func (b *bodyCheck) tooDeep(path string) error {
+	b.add(path, "nested too deeply", fmt.Sprintf("at most %d levels", b.depthMax), "No request of this API needs more.")
+	return errTooDeep
+}
+
+var (
+	notANumber   = regexp.MustCompile(`^[\s:,\[]*[+-]?(NaN|nan|Infinity|inf|Inf)`)
+	splitDecimal = regexp.MustCompile(`[0-9],[0-9]+\s*[,}]?$`)
+)
+
+// syntax words an error of the JSON reader, without its own text.
+func (b *bodyCheck) syntax(err error) {
+	if errors.Is(err, errTooDeep) {
+		return
+	}
+	at := int(b.tokens.InputOffset())
+	var syntax *json.SyntaxError
+	if errors.As(err, &syntax) && syntax.Offset > 0 {
+		at = int(syntax.Offset)
+	}
+	at = min(max(at, 0), len(b.body))
+	if errors.Is(err, io.EOF) || errors.Is(err, io.ErrUnexpectedEOF) {
+		b.add("", "cut off", "a whole JSON object", "A brace, bracket or quote is not closed.")
+		return
+	}
+	start := max(at-24, 0)
+	for start > 0 && !utf8.RuneStart(b.body[start]) {
+		start--
+	}
+	before := b.body[start:at]
+	line := 1 + bytes.Count(b.body[:at], []byte("\n"))
+	where := fmt.Sprintf("not JSON near line %d, after %q", line, before)
+	wayOut := "Check commas, quotes and brackets."
+	if notANumber.Match(b.body[max(at-1, 0):]) || notANumber.Match(b.body[max(at-2, 0):]) {
+		wayOut = "JSON has no NaN or Infinity; leave the field out if the value is not known."
+	} else if splitDecimal.Match(before) {
+		wayOut = "It looks like a decimal comma: write a decimal point."
+	}
+	b.add("", where, "valid JSON", wayOut)
+}
+
+func kindOf(token json.Token) string {
+	switch v := token.(type) {
+	case nil:
+		return "null"
+	case bool:
+		return strconv.FormatBool(v)
+	case string:
+		return strconv.Quote(clip(v))
+	case json.Number:
+		return clip(v.String())
+	case json.Delim:
+		if v == '[' {
+			return "a list"
+		}
+		return "an object"
+	}
+	return "something else"
+}

@@ -1,0 +1,161 @@
+package statuses
+
+import (
+	"errors"
+	"fmt"
+	"strconv"
+	"strings"
+
+	validate "buf.build/gen/go/bufbuild/protovalidate/protocolbuffers/go/buf/validate"
+	"buf.build/go/protovalidate"
+	"google.golang.org/protobuf/proto"
+	"google.golang.org/protobuf/reflect/protoreflect"
+
+	calandriav1 "calandria.example/calandria/proto/calandria/v1"
+	"calandria.example/calandria/server/convert"
+)
+
+// FromValidation words the violations of the protos' own rules. ok is false
+// if err is something else, such as a rule that does not compile.
+func FromValidation(err error) (violations []*calandriav1.Violation, ok bool) {
+	var invalid *protovalidate.ValidationError
+	if !errors.As(err, &invalid) {
+		return nil, false
+	}
+	seen := map[string]bool{}
+	for _, v := range invalid.Violations {
+		field := protovalidate.FieldPathString(v.Proto.GetField())
+		if seen[field] {
+			continue
+		}
+		seen[field] = true
+		violations = append(violations, wordViolation(field, v))
+	}
+	return violations, true
+}
+
+func wordViolation(field string, v *protovalidate.Violation) *calandriav1.Violation {
+	rule := v.Proto.GetRuleId()
+	if v.FieldDescriptor == nil { // a oneof
+		parent := ""
+		if i := strings.LastIndex(field, "."); i >= 0 {
+			parent = field[:i+1]
+		}
+		members := oneofMembers(field[len(parent):])
+		limit := "exactly one of " + strings.Join(members, ", ")
+		return &calandriav1.Violation{
+			Field: field, Value: "left out", Limit: limit,
+			Detail: fmt.Sprintf("%s: give %s.", field, limit),
+		}
+	}
+	if rule == "required" {
+		return &calandriav1.Violation{
+			Field: field, Value: "left out", Limit: "needed",
+			Detail: fmt.Sprintf("%s is needed; give it.", field),
+		}
+	}
+	limit := Limit(v.FieldDescriptor)
+	value := shown(v.FieldValue, v.FieldDescriptor)
+	return &calandriav1.Violation{
+		Field: field, Value: value, Limit: limit,
+		Detail: fmt.Sprintf("%s is %s; it must be %s.%s", field, value, limit, hint(field, v.FieldValue)),
+	}
+}
+
+func oneofMembers(name string) []string {
+	oneofs := (&calandriav1.CustomLiquor{}).ProtoReflect().Descriptor().Oneofs()
+	var members []string
+	if o := oneofs.ByName(protoreflect.Name(name)); o != nil {
+		for i := range o.Fields().Len() {
+			members = append(members, string(o.Fields().Get(i).Name()))
+		}
+	}
+	return members
+}
+
+func shown(v protoreflect.Value, d protoreflect.FieldDescriptor) string {
+	switch value := v.Interface().(type) {
+	case float64:
+		return strconv.FormatFloat(value, 'g', -1, 64)
+	case string:
+		if len(value) > 40 {
+			return fmt.Sprintf("a text of %d characters", len([]rune(value)))
+		}
+		return strconv.Quote(value)
+	case protoreflect.List:
+		return fmt.Sprintf("%d items", value.Len())
+	}
+	return "given"
+}
+
+// hint guesses at a unit that was mixed up.
+func hint(field string, v protoreflect.Value) string {
+	value, ok := v.Interface().(float64)
+	if !ok {
+		return ""
+	}
+	if strings.Contains(field, "fraction") && value > 1 && value <= 100 {
+		return fmt.Sprintf(" It looks like a percentage: %g %% is %g.", value, value/100)
+	}
+	if strings.HasSuffix(field, "_kpa_abs") && value <= 0 {
+		return " It looks like a gauge pressure: add the barometric pressure."
+	}
+	return ""
+}
+
+// Limit words all rules of a field as one phrase with its unit.
+func Limit(d protoreflect.FieldDescriptor) string {
+	rules, ok := proto.GetExtension(d.Options(), validate.E_Field).(*validate.FieldRules)
+	if !ok || rules == nil {
+		return "valid"
+	}
+	if repeated := rules.GetRepeated(); repeated != nil {
+		var parts []string
+		if repeated.HasMinItems() {
+			parts = append(parts, fmt.Sprintf("at least %d items", repeated.GetMinItems()))
+		}
+		if repeated.HasMaxItems() {
+			parts = append(parts, fmt.Sprintf("at most %d items", repeated.GetMaxItems()))
+		}
+		if repeated.GetUnique() {
+			parts = append(parts, "each once")
+		}
+		if in := repeated.GetItems().GetString().GetIn(); len(in) > 0 {
+			parts = append(parts, "of "+strings.Join(in, ", "))
+		}
+		if number := repeated.GetItems().GetDouble(); number != nil {
+			parts = append(parts, "each "+limitOfNumber(number, ""))
+		}
+		return strings.Join(parts, ", ")
+	}
+	if text := rules.GetString(); text != nil {
+		return fmt.Sprintf("a text of at most %d characters", text.GetMaxLen())
+	}
+	if number := rules.GetDouble(); number != nil {
+		return limitOfNumber(number, convert.Unit(string(d.Name())))
+	}
+	return "given"
+}
+
+func limitOfNumber(r *validate.DoubleRules, unit string) string {
+	var parts []string
+	switch {
+	case r.HasGt():
+		parts = append(parts, "above "+plain(r.GetGt()))
+	case r.HasGte():
+		parts = append(parts, "at least "+plain(r.GetGte()))
+	}
+	switch {
+	case r.HasLt():
+		parts = append(parts, "below "+plain(r.GetLt()))
+	case r.HasLte():
+		parts = append(parts, "at most "+plain(r.GetLte()))
+	}
+	phrase := strings.Join(parts, " and ")
+	if unit != "" {
+		phrase += " " + unit
+	}
+	return phrase
+}
+
+func plain(v float64) string { return strconv.FormatFloat(v, 'f', -1, 64) }
