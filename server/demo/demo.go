@@ -158,9 +158,9 @@ func render(s *scenario, requests []*calandriav1.SolveEffectRequest, solutions [
 	for _, q := range s.Questions {
 		fmt.Fprintf(&b, "  %s  %s\n", q.Key, q.Ask)
 	}
-	fmt.Fprintf(&b, "\n  %-*s%-*s", labelWidth, "", unitWidth, "")
+	fmt.Fprintf(&b, "\n  %*s", labelWidth+unitWidth-1, "")
 	for _, q := range s.Questions {
-		fmt.Fprintf(&b, "%*s ", valueWidth-1, q.Key+" "+q.Name)
+		fmt.Fprintf(&b, "%*s", valueWidth, q.Key+" "+q.Name)
 	}
 	fmt.Fprintf(&b, "\n  %s\n", strings.Repeat("-", labelWidth+unitWidth+valueWidth*len(s.Questions)))
 	for _, r := range rows {
@@ -173,6 +173,7 @@ func render(s *scenario, requests []*calandriav1.SolveEffectRequest, solutions [
 			}
 			fmt.Fprintf(&b, "%*s%s", valueWidth-1, strconv.FormatFloat(v*r.scale, 'f', r.decimals, 64), mark)
 		}
+		b.Truncate(len(bytes.TrimRight(b.Bytes(), " ")))
 		fmt.Fprintln(&b)
 	}
 	fmt.Fprintf(&b, "\n  * solved for: what a question leaves out is found\n")

@@ -31,10 +31,13 @@ func checkBody(body []byte, d protoreflect.MessageDescriptor, depthMax int) []*c
 	b.tokens = json.NewDecoder(bytes.NewReader(body))
 	b.tokens.UseNumber()
 	m := dynamicpb.NewMessage(d)
-	if err := b.document(m); err != nil {
+	whole, err := b.document(m)
+	if err != nil {
 		b.syntax(err)
 	}
-	b.rules(m)
+	if whole {
+		b.rules(m)
+	}
 	return b.violations
 }
 
@@ -48,22 +51,24 @@ type bodyCheck struct {
 // errTooDeep ends a walk; the complaint is already made.
 var errTooDeep = errors.New("too deep")
 
-func (b *bodyCheck) document(m *dynamicpb.Message) error {
+// document reads the whole body into m; whole tells whether it could be read to
+// the end of the object.
+func (b *bodyCheck) document(m *dynamicpb.Message) (whole bool, err error) {
 	first, err := b.tokens.Token()
 	if err != nil {
-		return err
+		return false, err
 	}
 	if first != json.Delim('{') {
 		b.add("", kindOf(first), "a JSON object", "Send one object in braces.")
-		return nil
+		return false, nil
 	}
 	if err := b.object(m, "", 1); err != nil {
-		return err
+		return false, err
 	}
 	if _, err := b.tokens.Token(); !errors.Is(err, io.EOF) {
 		b.add("", "followed by more data", "one JSON object and nothing after it", "Send one request at a time.")
 	}
-	return nil
+	return true, nil
 }
 
 // object reads the rest of an object whose brace is open.
@@ -220,7 +225,7 @@ func (b *bodyCheck) tooDeep(path string) error {
 
 var (
 	notANumber   = regexp.MustCompile(`^[\s:,\[]*[+-]?(NaN|nan|Infinity|inf|Inf)`)
-	splitDecimal = regexp.MustCompile(`[0-9],[0-9]+\s*[,}]?$`)
+	splitDecimal = regexp.MustCompile(`[0-9],[0-9]*$`)
 )
 
 // syntax words an error of the JSON reader, without its own text.
@@ -246,7 +251,12 @@ func (b *bodyCheck) syntax(err error) {
 	line := 1 + bytes.Count(b.body[:at], []byte("\n"))
 	where := fmt.Sprintf("not JSON near line %d, after %q", line, before)
 	wayOut := "Check commas, quotes and brackets."
-	if notANumber.Match(b.body[max(at-1, 0):]) || notANumber.Match(b.body[max(at-2, 0):]) {
+	// The reader stops before, at or just behind the offending character.
+	isNaN := false
+	for back := range 3 {
+		isNaN = isNaN || notANumber.Match(b.body[max(at-back, 0):])
+	}
+	if isNaN {
 		wayOut = "JSON has no NaN or Infinity; leave the field out if the value is not known."
 	} else if splitDecimal.Match(before) {
 		wayOut = "It looks like a decimal comma: write a decimal point."

@@ -104,14 +104,17 @@ var decimalComma = regexp.MustCompile(`^[+-]?[0-9]+,[0-9]+$`)
 
 // number reads text as a number for field f, or complains.
 func (c *check) number(f protoreflect.FieldDescriptor, path, text string) (float64, bool) {
-	unit := convert.Unit(string(f.Name()))
-	limit := strings.TrimSpace("a plain number " + unit)
+	in := ""
+	if unit := convert.Unit(string(f.Name())); unit != "" {
+		in = " in " + unit
+	}
+	limit := "a plain number" + in
 	switch lower := strings.ToLower(strings.TrimLeft(text, "+-")); {
 	case decimalComma.MatchString(text):
 		c.add(path, strconv.Quote(text), limit, "It looks like a decimal comma: write "+strings.Replace(text, ",", ".", 1)+".")
 		return 0, false
 	case lower == "nan" || lower == "inf" || lower == "infinity":
-		c.add(path, strconv.Quote(clip(text)), "a finite number "+unit, "Leave the field out if the value is not known.")
+		c.add(path, strconv.Quote(clip(text)), "a finite number"+in, "Leave the field out if the value is not known.")
 		return 0, false
 	case text == "":
 		c.add(path, "empty", limit, "Give a number, or leave the field out.")

@@ -16,6 +16,8 @@ import (
 	"calandria.example/calandria/server/telemetry"
 )
 
+//go:generate go run ./openapi -root ../.. -out openapi.json
+
 //go:embed openapi.json
 var openAPI []byte
 
