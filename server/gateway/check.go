@@ -54,7 +54,7 @@ func (c *check) rules(m *dynamicpb.Message) {
 	if err == nil {
 		return
 	}
-	more, ok := statuses.FromValidation(err)
+	more, ok := statuses.FromValidation(err, m.Descriptor())
 	if !ok {
 		return
 	}

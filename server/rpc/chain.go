@@ -81,7 +81,7 @@ func checkRules(validator protovalidate.Validator) grpc.UnaryServerInterceptor {
 	return func(ctx context.Context, request any, _ *grpc.UnaryServerInfo, handler grpc.UnaryHandler) (any, error) {
 		if m, ok := request.(proto.Message); ok {
 			if err := validator.Validate(m); err != nil {
-				violations, ok := statuses.FromValidation(err)
+				violations, ok := statuses.FromValidation(err, m.ProtoReflect().Descriptor())
 				if !ok {
 					return nil, err
 				}

@@ -15,9 +15,10 @@ import (
 	"calandria.example/calandria/server/convert"
 )
 
-// FromValidation words the violations of the protos' own rules. ok is false
-// if err is something else, such as a rule that does not compile.
-func FromValidation(err error) (violations []*calandriav1.Violation, ok bool) {
+// FromValidation words the violations of the protos' own rules in a message of
+// type d. ok is false if err is something else, such as a rule that does not
+// compile.
+func FromValidation(err error, d protoreflect.MessageDescriptor) (violations []*calandriav1.Violation, ok bool) {
 	var invalid *protovalidate.ValidationError
 	if !errors.As(err, &invalid) {
 		return nil, false
@@ -29,51 +30,50 @@ func FromValidation(err error) (violations []*calandriav1.Violation, ok bool) {
 			continue
 		}
 		seen[field] = true
-		violations = append(violations, wordViolation(field, v))
+		violations = append(violations, wordViolation(field, v, d))
 	}
 	return violations, true
 }
 
-func wordViolation(field string, v *protovalidate.Violation) *calandriav1.Violation {
-	rule := v.Proto.GetRuleId()
-	if v.FieldDescriptor == nil { // a oneof
-		parent := ""
-		if i := strings.LastIndex(field, "."); i >= 0 {
-			parent = field[:i+1]
+func wordViolation(field string, v *protovalidate.Violation, d protoreflect.MessageDescriptor) *calandriav1.Violation {
+	elements := v.Proto.GetField().GetElements()
+	var at protoreflect.FieldDescriptor
+	for i, element := range elements {
+		at = d.Fields().ByNumber(protoreflect.FieldNumber(element.GetFieldNumber()))
+		if at == nil { // a oneof has no number
+			return missingChoice(field, d.Oneofs().ByName(protoreflect.Name(element.GetFieldName())))
 		}
-		members := oneofMembers(field[len(parent):])
-		limit := "exactly one of " + strings.Join(members, ", ")
-		return &calandriav1.Violation{
-			Field: field, Value: "left out", Limit: limit,
-			Detail: fmt.Sprintf("%s: give %s.", field, limit),
+		if i < len(elements)-1 && at.Message() != nil {
+			d = at.Message()
 		}
 	}
-	if rule == "required" {
+	if at == nil || v.Proto.GetRuleId() == "required" {
 		return &calandriav1.Violation{
 			Field: field, Value: "left out", Limit: "needed",
 			Detail: fmt.Sprintf("%s is needed; give it.", field),
 		}
 	}
-	limit := Limit(v.FieldDescriptor)
-	value := shown(v.FieldValue, v.FieldDescriptor)
+	limit := Limit(at)
+	value := shown(v.FieldValue)
 	return &calandriav1.Violation{
 		Field: field, Value: value, Limit: limit,
 		Detail: fmt.Sprintf("%s is %s; it must be %s.%s", field, value, limit, hint(field, v.FieldValue)),
 	}
 }
 
-func oneofMembers(name string) []string {
-	oneofs := (&calandriav1.CustomLiquor{}).ProtoReflect().Descriptor().Oneofs()
+// missingChoice words a oneof of which no member is given.
+func missingChoice(field string, o protoreflect.OneofDescriptor) *calandriav1.Violation {
 	var members []string
-	if o := oneofs.ByName(protoreflect.Name(name)); o != nil {
-		for i := range o.Fields().Len() {
-			members = append(members, string(o.Fields().Get(i).Name()))
-		}
+	for i := 0; o != nil && i < o.Fields().Len(); i++ {
+		members = append(members, string(o.Fields().Get(i).Name()))
 	}
-	return members
+	limit := "exactly one of " + strings.Join(members, ", ")
+	return &calandriav1.Violation{
+		Field: field, Value: "left out", Limit: limit, Detail: fmt.Sprintf("%s: give %s.", field, limit),
+	}
 }
 
-func shown(v protoreflect.Value, d protoreflect.FieldDescriptor) string {
+func shown(v protoreflect.Value) string {
 	switch value := v.Interface().(type) {
 	case float64:
 		return strconv.FormatFloat(value, 'g', -1, 64)

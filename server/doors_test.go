@@ -1,0 +1,342 @@
+package main
+
+import (
+	"context"
+	"encoding/json"
+	"errors"
+	"io"
+	"log/slog"
+	"math"
+	"net/http"
+	"net/url"
+	"os"
+	"strconv"
+	"strings"
+	"testing"
+	"time"
+
+	"google.golang.org/grpc"
+	"google.golang.org/grpc/codes"
+	"google.golang.org/grpc/credentials/insecure"
+	healthpb "google.golang.org/grpc/health/grpc_health_v1"
+	"google.golang.org/grpc/metadata"
+	"google.golang.org/grpc/reflection/grpc_reflection_v1"
+	"google.golang.org/grpc/status"
+	"google.golang.org/protobuf/encoding/protojson"
+	"google.golang.org/protobuf/proto"
+	"google.golang.org/protobuf/reflect/protoreflect"
+
+	"calandria.example/calandria/engine/vetting"
+	calandriav1 "calandria.example/calandria/proto/calandria/v1"
+	"calandria.example/calandria/server/settings"
+	"calandria.example/calandria/server/statuses"
+)
+
+// service is a real server on real sockets.
+type service struct {
+	doors
+	connection *grpc.ClientConn
+}
+
+func start(t *testing.T) *service {
+	t.Helper()
+	s, err := settings.Read([]string{"-grpc-listen", "127.0.0.1:0", "-http-listen", "127.0.0.1:0"}, func(string) string { return "" }, io.Discard)
+	if err != nil {
+		t.Fatal(err)
+	}
+	ctx, cancel := context.WithCancel(context.Background())
+	up, ended := make(chan doors, 1), make(chan error, 1)
+	go func() {
+		ended <- serve(ctx, s, slog.New(slog.DiscardHandler), vetting.Run(), func(d doors) { up <- d })
+	}()
+	var d doors
+	select {
+	case d = <-up:
+	case err := <-ended:
+		t.Fatal(err)
+	}
+	connection, err := grpc.NewClient(d.grpcAddress, grpc.WithTransportCredentials(insecure.NewCredentials()))
+	if err != nil {
+		t.Fatal(err)
+	}
+	t.Cleanup(func() {
+		if err := connection.Close(); err != nil {
+			t.Error(err)
+		}
+		http.DefaultClient.CloseIdleConnections()
+		cancel()
+		if err := <-ended; err != nil {
+			t.Error(err)
+		}
+	})
+	return &service{doors: d, connection: connection}
+}
+
+// ask makes one HTTP request and returns its answer whole.
+func (s *service) ask(t *testing.T, method, path, body string, header ...string) (*http.Response, string) {
+	t.Helper()
+	request, err := http.NewRequestWithContext(t.Context(), method, s.httpURL+path, strings.NewReader(body))
+	if err != nil {
+		t.Fatal(err)
+	}
+	for i := 0; i < len(header); i += 2 {
+		request.Header.Set(header[i], header[i+1])
+	}
+	response, err := http.DefaultClient.Do(request)
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer response.Body.Close()
+	text, err := io.ReadAll(response.Body)
+	if err != nil {
+		t.Fatal(err)
+	}
+	return response, string(text)
+}
+
+// TestWorkedExamplesThroughEveryDoor sends the worked examples of textbooks
+// (testdata/published/effects.json, sources and tolerances beside them)
+// through gRPC, through REST by POST, and by GET where nothing is repeated.
+func TestWorkedExamplesThroughEveryDoor(t *testing.T) {
+	s := start(t)
+	text, err := os.ReadFile("../testdata/published/effects.json")
+	if err != nil {
+		t.Fatal(err)
+	}
+	var file struct {
+		Examples []struct {
+			ID       string
+			Request  json.RawMessage
+			Expected []struct {
+				Field     string
+				Value     float64
+				Tolerance float64 `json:"tolerance_percent"`
+			}
+		}
+	}
+	if err := json.Unmarshal(text, &file); err != nil {
+		t.Fatal(err)
+	}
+	byGet := 0
+	for _, e := range file.Examples {
+		var request calandriav1.SolveEffectRequest
+		if err := protojson.Unmarshal(e.Request, &request); err != nil {
+			t.Fatal(err)
+		}
+		overGRPC, err := calandriav1.NewTrainServiceClient(s.connection).SolveEffect(t.Context(), &request)
+		if err != nil {
+			t.Fatalf("%s: %v", e.ID, err)
+		}
+		for _, x := range e.Expected {
+			got := numberAt(t, overGRPC.ProtoReflect(), x.Field)
+			if deviation := 100 * math.Abs(got/x.Value-1); !(deviation <= x.Tolerance) {
+				t.Errorf("%s %s is %.6g, published %.6g: %.3f %%, allowed %g %%", e.ID, x.Field, got, x.Value, deviation, x.Tolerance)
+			}
+		}
+		check := func(door string, status int, body string) {
+			t.Helper()
+			var solution calandriav1.EffectSolution
+			if err := protojson.Unmarshal([]byte(body), &solution); err != nil || status != http.StatusOK {
+				t.Errorf("%s %s: status %d, %v: %s", e.ID, door, status, err, body)
+			} else if !proto.Equal(&solution, overGRPC) {
+				t.Errorf("%s %s differs from gRPC:\n%s", e.ID, door, body)
+			}
+		}
+		response, body := s.ask(t, http.MethodPost, "/v1/effects:solve", string(e.Request), "Content-Type", "application/json")
+		check("POST", response.StatusCode, body)
+		query := url.Values{}
+		if flatten(request.ProtoReflect(), "", query) {
+			response, body := s.ask(t, http.MethodGet, "/v1/effects:solve?"+query.Encode(), "")
+			check("GET", response.StatusCode, body)
+			byGet++
+		}
+	}
+	if byGet < 6 {
+		t.Errorf("%d examples went through GET, want those without a table", byGet)
+	}
+}
+
+// flatten writes a request as query parameters; false if it holds a table.
+func flatten(m protoreflect.Message, prefix string, query url.Values) (ok bool) {
+	ok = true
+	m.Range(func(f protoreflect.FieldDescriptor, v protoreflect.Value) bool {
+		name := prefix + string(f.Name())
+		switch {
+		case f.IsList() && f.Kind() == protoreflect.MessageKind:
+			ok = false
+		case f.IsList():
+			for i := range v.List().Len() {
+				query.Add(name, v.List().Get(i).String())
+			}
+		case f.Kind() == protoreflect.MessageKind:
+			ok = flatten(v.Message(), name+".", query) && ok
+		case f.Kind() == protoreflect.DoubleKind:
+			query.Set(name, strconv.FormatFloat(v.Float(), 'g', -1, 64))
+		default:
+			query.Set(name, v.String())
+		}
+		return ok
+	})
+	return ok
+}
+
+func numberAt(t *testing.T, m protoreflect.Message, path string) float64 {
+	t.Helper()
+	names := strings.Split(path, ".")
+	for _, name := range names[:len(names)-1] {
+		m = m.Get(m.Descriptor().Fields().ByName(protoreflect.Name(name))).Message()
+	}
+	return m.Get(m.Descriptor().Fields().ByName(protoreflect.Name(names[len(names)-1]))).Float()
+}
+
+// TestSteamOverBothDoors asks for states whose values the release prints.
+func TestSteamOverBothDoors(t *testing.T) {
+	s := start(t)
+	client := calandriav1.NewSteamServiceClient(s.connection)
+	for _, c := range []struct {
+		name, source string
+		request      *calandriav1.GetSteamStateRequest
+		want         float64 // kJ/kg
+		tolerance    float64
+	}{
+		{"region 1", "IAPWS R7-97(2012) Table 5, 500 K and 3 MPa", &calandriav1.GetSteamStateRequest{PressureKpaAbs: proto.Float64(3000), TemperatureC: proto.Float64(226.85)}, 975.542239, 5e-7},
+		{"region 2", "IAPWS R7-97(2012) Table 15, 700 K and 30 MPa", &calandriav1.GetSteamStateRequest{PressureKpaAbs: proto.Float64(30000), TemperatureC: proto.Float64(426.85)}, 2631.49474, 5e-6},
+		{"saturated vapour", "common practice: near 2676 kJ/kg at 100 degC", &calandriav1.GetSteamStateRequest{TemperatureC: proto.Float64(100), DrynessFraction: proto.Float64(1)}, 2676, 1},
+		{"wet", "common practice: half of the latent heat near 2257 above 419 kJ/kg at 100 degC", &calandriav1.GetSteamStateRequest{TemperatureC: proto.Float64(100), DrynessFraction: proto.Float64(0.5)}, 419 + 2257/2., 1},
+	} {
+		state, err := client.GetSteamState(t.Context(), c.request)
+		if err != nil {
+			t.Errorf("%s: %v", c.name, err)
+			continue
+		}
+		if !(math.Abs(state.GetEnthalpyKjPerKg()-c.want) <= c.tolerance) {
+			t.Errorf("%s: h = %.9g, want %.9g (%s)", c.name, state.GetEnthalpyKjPerKg(), c.want, c.source)
+		}
+		query := url.Values{}
+		flatten(c.request.ProtoReflect(), "", query)
+		_, body := s.ask(t, http.MethodGet, "/v1/steam/state?"+query.Encode(), "")
+		var overREST calandriav1.SteamState
+		if err := protojson.Unmarshal([]byte(body), &overREST); err != nil || !proto.Equal(&overREST, state) {
+			t.Errorf("%s: REST differs from gRPC: %v %s", c.name, err, body)
+		}
+		wet := c.name == "wet"
+		if (state.SpecificHeatCpKjPerKgK == nil) != wet || strings.Contains(body, "specific_heat_cp") == wet {
+			t.Errorf("%s: cp must be absent in wet steam, and only there: %s", c.name, body)
+		}
+	}
+	for _, c := range []struct {
+		pressure, latent, tolerance float64
+	}{
+		{101.41799, 2257, 1}, // common practice: latent heat near 2257 kJ/kg at 100 degC
+		{143.3, 2230, 1},     // common practice: latent heat near 2230 kJ/kg at 110 degC
+	} {
+		saturation, err := client.GetSaturation(t.Context(), &calandriav1.GetSaturationRequest{PressureKpaAbs: proto.Float64(c.pressure)})
+		if err != nil || !(math.Abs(saturation.GetLatentHeatKjPerKg()-c.latent) <= c.tolerance) {
+			t.Errorf("latent heat at %g kPa is %v, want near %g: %v", c.pressure, saturation.GetLatentHeatKjPerKg(), c.latent, err)
+		}
+	}
+}
+
+func TestVerificationAndEngine(t *testing.T) {
+	s := start(t)
+	client := calandriav1.NewEngineServiceClient(s.connection)
+	verification, err := client.VerifyEngine(t.Context(), &calandriav1.VerifyEngineRequest{})
+	if err != nil || !verification.GetPassed() || verification.GetCount() != int32(len(verification.GetChecks())) || verification.GetCount() < 42 {
+		t.Errorf("verification: %v, %v", verification, err)
+	}
+	described, err := client.GetEngine(t.Context(), &calandriav1.GetEngineRequest{})
+	if err != nil || len(described.GetModels()) == 0 || described.GetLimits().GetRequestBytes() == 0 {
+		t.Errorf("engine: %v, %v", described, err)
+	}
+}
+
+func TestHealthReflectionAndIDs(t *testing.T) {
+	s := start(t)
+	for _, name := range []string{"", "calandria.v1.TrainService"} {
+		answer, err := healthpb.NewHealthClient(s.connection).Check(t.Context(), &healthpb.HealthCheckRequest{Service: name})
+		if err != nil || answer.GetStatus() != healthpb.HealthCheckResponse_SERVING {
+			t.Errorf("health of %q: %v, %v", name, answer, err)
+		}
+	}
+	stream, err := grpc_reflection_v1.NewServerReflectionClient(s.connection).ServerReflectionInfo(t.Context())
+	if err != nil {
+		t.Fatal(err)
+	}
+	ask := &grpc_reflection_v1.ServerReflectionRequest{MessageRequest: &grpc_reflection_v1.ServerReflectionRequest_ListServices{}}
+	if err := stream.Send(ask); err != nil {
+		t.Fatal(err)
+	}
+	listed, err := stream.Recv()
+	if err != nil || !strings.Contains(listed.String(), "calandria.v1.SteamService") {
+		t.Errorf("reflection: %v, %v", listed, err)
+	}
+	if err := stream.CloseSend(); err != nil {
+		t.Error(err)
+	}
+
+	var header metadata.MD
+	ctx := metadata.AppendToOutgoingContext(t.Context(), "x-request-id", "shift-7.a")
+	if _, err := calandriav1.NewEngineServiceClient(s.connection).GetEngine(ctx, &calandriav1.GetEngineRequest{}, grpc.Header(&header)); err != nil {
+		t.Fatal(err)
+	}
+	if got := header.Get("x-request-id"); len(got) != 1 || got[0] != "shift-7.a" {
+		t.Errorf("gRPC request id %q, want the caller's own", got)
+	}
+	response, _ := s.ask(t, http.MethodGet, "/v1/engine", "", "X-Request-Id", "shift-7.b")
+	if got := response.Header.Get("X-Request-Id"); got != "shift-7.b" {
+		t.Errorf("REST request id %q, want the caller's own", got)
+	}
+	response, _ = s.ask(t, http.MethodGet, "/v1/engine", "", "X-Request-Id", "a b")
+	if got := response.Header.Get("X-Request-Id"); got == "a b" || got == "" {
+		t.Errorf("REST request id %q, want a new one", got)
+	}
+	for name := range response.Header {
+		if strings.HasPrefix(name, "Grpc-") {
+			t.Errorf("header %s leaks", name)
+		}
+	}
+}
+
+// TestSameRefusalAtBothDoors holds gRPC and REST to the same reasons.
+func TestSameRefusalAtBothDoors(t *testing.T) {
+	s := start(t)
+	for _, c := range []struct {
+		reason calandriav1.Reason
+		code   codes.Code
+		body   string
+	}{
+		{calandriav1.Reason_REASON_FIELD_INVALID, codes.InvalidArgument, `{"feed":{"flow_kg_per_h":-1}}`},
+		{calandriav1.Reason_REASON_UNDER_SPECIFIED, codes.InvalidArgument, `{"custom_liquor":{"rise_k":0,"specific_heat_kj_per_kg_k":4}}`},
+		{calandriav1.Reason_REASON_OVER_SPECIFIED, codes.InvalidArgument, `{"custom_liquor":{"rise_k":0,"specific_heat_kj_per_kg_k":4},"steam":{"pressure_kpa_abs":100,"temperature_c":100}}`},
+		// E29 of the textbooks' kind: 75 % caustic boils hotter than its 340 degF steam.
+		{calandriav1.Reason_REASON_INFEASIBLE, codes.FailedPrecondition, `{"custom_liquor":{"rise_k":90,"specific_heat_kj_per_kg_k":3.2},"feed":{"flow_kg_per_h":4535.9,"solids_fraction":0.1,"temperature_c":25},"product":{"solids_fraction":0.75},"steam":{"temperature_c":171.1},"effect":{"pressure_kpa_abs":101.325,"coefficient_w_per_m2_k":2839}}`},
+	} {
+		var request calandriav1.SolveEffectRequest
+		if err := protojson.Unmarshal([]byte(c.body), &request); err != nil {
+			t.Fatal(err)
+		}
+		_, err := calandriav1.NewTrainServiceClient(s.connection).SolveEffect(t.Context(), &request)
+		if got := statuses.Reason(status.Convert(err)); got != c.reason || status.Code(err) != c.code {
+			t.Errorf("gRPC: %v %v, want %v: %v", status.Code(err), got, c.reason, err)
+		}
+		response, text := s.ask(t, http.MethodPost, "/v1/effects:solve", c.body)
+		if response.StatusCode != statuses.HTTP(c.reason) || !strings.Contains(text, `"reason":"`+statuses.Word(c.reason)+`"`) {
+			t.Errorf("REST: %d %s, want %v", response.StatusCode, text, c.reason)
+		}
+	}
+}
+
+func TestWillNotServeUnvetted(t *testing.T) {
+	results := vetting.Run()
+	results[3].Passed = false
+	s, err := settings.Read(nil, func(string) string { return "" }, io.Discard)
+	if err != nil {
+		t.Fatal(err)
+	}
+	ctx, cancel := context.WithTimeout(t.Context(), 5*time.Second)
+	defer cancel()
+	err = serve(ctx, s, slog.New(slog.DiscardHandler), results, nil)
+	if !errors.Is(err, errUnvetted) || !strings.Contains(err.Error(), results[3].ID) {
+		t.Errorf("got %v, want a refusal that names %s", err, results[3].ID)
+	}
+}
