@@ -77,8 +77,9 @@ func serve(ctx context.Context, s settings.Settings, log *slog.Logger, checks []
 	protocols := new(http.Protocols)
 	protocols.SetHTTP1(true)
 	protocols.SetUnencryptedHTTP2(true)
+	connections := newDrain()
 	httpServer := &http.Server{
-		Handler: rest, Protocols: protocols,
+		Handler: connections.telling(rest), ConnState: connections.watch, Protocols: protocols,
 		ReadHeaderTimeout: 10 * time.Second, ReadTimeout: time.Minute, WriteTimeout: 2 * time.Minute, IdleTimeout: 2 * time.Minute,
 		MaxHeaderBytes: 64 << 10,
 		ErrorLog:       slog.NewLogLogger(log.Handler(), slog.LevelWarn),
@@ -98,7 +99,7 @@ func serve(ctx context.Context, s settings.Settings, log *slog.Logger, checks []
 	go func() { ended <- grpcServer.Serve(grpcListener) }()
 	go func() {
 		err := httpServer.Serve(httpListener)
-		if errors.Is(err, http.ErrServerClosed) {
+		if errors.Is(err, http.ErrServerClosed) || errors.Is(err, net.ErrClosed) {
 			err = nil
 		}
 		ended <- err
@@ -120,31 +121,9 @@ func serve(ctx context.Context, s settings.Settings, log *slog.Logger, checks []
 	log.Info("stopping: finishing what is in flight", "at_most", s.Drain)
 	ready.Store(false)
 	state.Shutdown()
-	stop(httpServer, grpcServer, s.Drain)
+	stop(httpServer, connections, httpListener, grpcServer, s.Drain)
 	log.Info("stopped")
 	return failure
-}
-
-// stop lets both doors finish their requests side by side, and cuts off what
-// is left at the deadline.
-func stop(httpServer *http.Server, grpcServer *grpc.Server, longest time.Duration) {
-	ctx, cancel := context.WithTimeout(context.Background(), longest)
-	defer cancel()
-	done := make(chan struct{})
-	go func() {
-		grpcServer.GracefulStop()
-		close(done)
-	}()
-	if err := httpServer.Shutdown(ctx); err != nil {
-		// The deadline passed: what is left is cut off.
-		_ = httpServer.Close()
-	}
-	select {
-	case <-done:
-	case <-ctx.Done():
-		grpcServer.Stop()
-		<-done
-	}
 }
 
 func listen(ctx context.Context, door, address string) (net.Listener, error) {
