@@ -5,7 +5,6 @@ import (
 	"fmt"
 	"log/slog"
 	"math"
-	"runtime/debug"
 	"time"
 
 	"buf.build/go/protovalidate"
@@ -19,7 +18,7 @@ import (
 )
 
 // Chain returns the interceptors that every call passes, whichever door it
-// came through, outermost first: id and log line, mapping of faults, recovery,
+// came through, outermost first: id, log line and recovery, mapping of faults,
 // time limit, the protos' own rules, and a look at the answer.
 func Chain(log *slog.Logger, longest time.Duration) ([]grpc.UnaryServerInterceptor, error) {
 	validator, err := protovalidate.New(
@@ -29,7 +28,7 @@ func Chain(log *slog.Logger, longest time.Duration) ([]grpc.UnaryServerIntercept
 		return nil, fmt.Errorf("rules of the protos: %w", err)
 	}
 	return []grpc.UnaryServerInterceptor{
-		telemetry.Unary(log), mapFaults(log), recoverPanics, limitTime(longest), checkRules(validator), checkAnswer,
+		telemetry.Unary(log), mapFaults(log), limitTime(longest), checkRules(validator), checkAnswer,
 	}, nil
 }
 
@@ -47,23 +46,6 @@ func mapFaults(log *slog.Logger) grpc.UnaryServerInterceptor {
 		}
 		return nil, s.Err()
 	}
-}
-
-// panicked carries a panic to the log.
-type panicked struct {
-	value any
-	stack []byte
-}
-
-func (p *panicked) Error() string { return fmt.Sprintf("panic: %v\n%s", p.value, p.stack) }
-
-func recoverPanics(ctx context.Context, request any, _ *grpc.UnaryServerInfo, handler grpc.UnaryHandler) (answer any, err error) {
-	defer func() {
-		if v := recover(); v != nil {
-			answer, err = nil, &panicked{v, debug.Stack()}
-		}
-	}()
-	return handler(ctx, request)
 }
 
 func limitTime(longest time.Duration) grpc.UnaryServerInterceptor {

@@ -7,6 +7,7 @@ import (
 	"crypto/rand"
 	"encoding/hex"
 	"log/slog"
+	"runtime/debug"
 	"time"
 
 	"google.golang.org/grpc"
@@ -64,33 +65,45 @@ func ID(ctx context.Context) string {
 	return id
 }
 
-// Unary names every call by an id, the caller's own if it is acceptable,
-// returns it in the header, and writes a line for each answer.
+// Unary is the outermost interceptor. It names every call by an id, the
+// caller's own if it is acceptable, returns it in the header, writes a line
+// for each answer, and turns a panic anywhere inside into a status that shows
+// the id only; value and stack go to the log. In the in-process channel a
+// panic would otherwise end the program.
 func Unary(log *slog.Logger) grpc.UnaryServerInterceptor {
-	return func(ctx context.Context, request any, info *grpc.UnaryServerInfo, handler grpc.UnaryHandler) (any, error) {
+	return func(ctx context.Context, request any, info *grpc.UnaryServerInfo, handler grpc.UnaryHandler) (answer any, err error) {
 		start := time.Now()
 		id, rest := incoming(ctx)
 		ctx = WithID(ctx, id)
+		defer func() {
+			if v := recover(); v != nil {
+				log.LogAttrs(ctx, slog.LevelError, "panic", slog.String("id", id), slog.String("method", info.FullMethod), slog.Any("value", v), slog.String("stack", string(debug.Stack())))
+				answer, err = nil, statuses.Internal(id).Err()
+			}
+			// The REST face writes a line of its own.
+			if !rest {
+				line(ctx, log, id, info.FullMethod, err, time.Since(start))
+			}
+		}()
 		// A header that can not be sent any more does not matter to the answer.
 		_ = grpc.SetHeader(ctx, metadata.Pairs(IDHeader, id))
-		answer, err := handler(ctx, request)
-		if rest {
-			return answer, err
-		}
-		s := status.Convert(err)
-		attributes := []slog.Attr{
-			slog.String("door", "grpc"), slog.String("id", id), slog.String("method", info.FullMethod),
-			slog.String("code", s.Code().String()), slog.Duration("took", time.Since(start)),
-		}
-		if err != nil {
-			attributes = append(attributes, slog.String("reason", statuses.Word(statuses.Reason(s))))
-		}
-		if p, ok := peer.FromContext(ctx); ok && p.Addr != nil {
-			attributes = append(attributes, slog.String("peer", p.Addr.String()))
-		}
-		log.LogAttrs(ctx, slog.LevelInfo, "answered", attributes...)
-		return answer, err
+		return handler(ctx, request)
 	}
+}
+
+func line(ctx context.Context, log *slog.Logger, id, method string, err error, took time.Duration) {
+	s := status.Convert(err)
+	attributes := []slog.Attr{
+		slog.String("door", "grpc"), slog.String("id", id), slog.String("method", method),
+		slog.String("code", s.Code().String()), slog.Duration("took", took),
+	}
+	if err != nil {
+		attributes = append(attributes, slog.String("reason", statuses.Word(statuses.Reason(s))))
+	}
+	if p, ok := peer.FromContext(ctx); ok && p.Addr != nil {
+		attributes = append(attributes, slog.String("peer", p.Addr.String()))
+	}
+	log.LogAttrs(ctx, slog.LevelInfo, "answered", attributes...)
 }
 
 func incoming(ctx context.Context) (id string, rest bool) {

@@ -1,0 +1,173 @@
+package gateway
+
+import (
+	"context"
+	"encoding/json"
+	"io"
+	"log/slog"
+	"net/http"
+	"net/http/httptest"
+	"net/url"
+	"strings"
+	"testing"
+
+	"github.com/fullstorydev/grpchan/inprocgrpc"
+	"google.golang.org/grpc"
+	"google.golang.org/protobuf/encoding/protojson"
+
+	calandriav1 "calandria.example/calandria/proto/calandria/v1"
+	"calandria.example/calandria/server/rpc"
+	"calandria.example/calandria/server/statuses"
+	"calandria.example/calandria/server/telemetry"
+)
+
+// face is a gateway over the real services, without a socket.
+func face(t testing.TB, interceptor grpc.UnaryServerInterceptor) *Gateway {
+	t.Helper()
+	channel := &inprocgrpc.Channel{}
+	if interceptor != nil {
+		channel = channel.WithServerUnaryInterceptor(interceptor)
+	}
+	(&rpc.Services{}).Register(channel)
+	g, err := New(channel, Limits{RequestBytes: 1 << 20, JSONDepth: 16, TargetBytes: 8192}, func() bool { return true }, slog.New(slog.DiscardHandler))
+	if err != nil {
+		t.Fatal(err)
+	}
+	return g
+}
+
+func ask(g http.Handler, method, target, body string) (int, string, http.Header) {
+	request := httptest.NewRequest(method, target, strings.NewReader(body))
+	recorder := httptest.NewRecorder()
+	g.ServeHTTP(recorder, request)
+	return recorder.Code, recorder.Body.String(), recorder.Header()
+}
+
+func TestPanicLeaksNothing(t *testing.T) {
+	var log strings.Builder
+	recovering := telemetry.Unary(slog.New(slog.NewTextHandler(&log, nil)))
+	g := face(t, func(ctx context.Context, request any, info *grpc.UnaryServerInfo, _ grpc.UnaryHandler) (any, error) {
+		return recovering(ctx, request, info, func(context.Context, any) (any, error) { panic("secret of the house") })
+	})
+	code, body, header := ask(g, "GET", "/v1/engine", "")
+	if code != 500 || strings.Contains(body, "secret") || strings.Contains(body, "goroutine") {
+		t.Errorf("%d %s", code, body)
+	}
+	id := header.Get("X-Request-Id")
+	if id == "" || !strings.Contains(body, id) || !strings.Contains(log.String(), id) || !strings.Contains(log.String(), "secret of the house") {
+		t.Errorf("id %q must lead from the answer %s to the log %s", id, body, log.String())
+	}
+}
+
+func TestNotReady(t *testing.T) {
+	g := face(t, nil)
+	g.ready = func() bool { return false }
+	if code, body, _ := ask(g, "GET", "/readyz", ""); code != 503 {
+		t.Errorf("%d %s", code, body)
+	}
+	if code, _, _ := ask(g, "GET", "/healthz", ""); code != 200 {
+		t.Errorf("%d", code)
+	}
+}
+
+func TestEveryReasonHasItsWords(t *testing.T) {
+	for number := range calandriav1.Reason_name {
+		reason := calandriav1.Reason(number)
+		if reason == calandriav1.Reason_REASON_UNSPECIFIED {
+			continue
+		}
+		if titles[reason] == "" {
+			t.Errorf("%v has no title", reason)
+		}
+		s := statuses.New(reason, "words", nil)
+		if statuses.Reason(s) != reason || statuses.HTTP(reason) < 400 {
+			t.Errorf("%v does not survive as a status: %v", reason, s)
+		}
+	}
+}
+
+// checkAnswered holds any answer to what every answer must be.
+func checkAnswered(t *testing.T, code int, body string, header http.Header) {
+	t.Helper()
+	if code >= 500 {
+		t.Fatalf("%d %s", code, body)
+	}
+	if strings.Contains(body, "NaN") && code == 200 {
+		t.Fatalf("NaN in an answer: %s", body)
+	}
+	if header.Get("Content-Type") == "application/problem+json" {
+		var problem Problem
+		if err := json.Unmarshal([]byte(body), &problem); err != nil || problem.Reason == "" || problem.Detail == "" || problem.Status != code {
+			t.Fatalf("not a problem: %v %s", err, body)
+		}
+	} else if code != 200 {
+		t.Fatalf("%d without a problem: %s", code, body)
+	}
+}
+
+// FuzzBody sends any text as a body. It must be answered or refused, never
+// fail; and whatever the checker lets through the JSON reader must take.
+func FuzzBody(f *testing.F) {
+	for _, seed := range []string{
+		`{}`, `{"custom_liquor":{"rise_k":0,"specific_heat_kj_per_kg_k":4},"feed":{"flow_kg_per_h":1000,"solids_fraction":0.1,"temperature_c":50},"product":{"solids_fraction":0.4},"steam":{"pressure_kpa_abs":200},"effect":{"pressure_kpa_abs":20,"coefficient_w_per_m2_k":2000}}`,
+		`{"custom_liquor":{"duhring":{"lines":[{"solids_fraction":0.5,"slope":1.1,"intercept_c":30}]},"enthalpy_table":{"rows":[{"solids_fraction":0.1,"points":[{"temperature_c":20,"enthalpy_kj_per_kg":80}]}]}},"find":["effect.vent_fraction"],"economy":1e0}`,
+		`{"economy":NaN}`, `{"economy":1,5}`, `[[[[`, `{"a":{"b":`, "\"\xff\"", `{"feed":null}`, `{"economy":"1,5"} {}`,
+	} {
+		f.Add(seed)
+	}
+	g := face(f, nil)
+	f.Fuzz(func(t *testing.T, body string) {
+		descriptor := (&calandriav1.SolveEffectRequest{}).ProtoReflect().Descriptor()
+		if len(checkBody([]byte(body), descriptor, 16)) == 0 {
+			if err := (protojson.UnmarshalOptions{}).Unmarshal([]byte(body), &calandriav1.SolveEffectRequest{}); err != nil {
+				t.Fatalf("let through, but %v: %q", err, body)
+			}
+		}
+		code, text, header := ask(g, "POST", "/v1/effects:solve", body)
+		checkAnswered(t, code, text, header)
+	})
+}
+
+// FuzzQuery does the same for a query.
+func FuzzQuery(f *testing.F) {
+	for _, seed := range []string{
+		"pressure_kpa_abs=100", "temperature_c=100&pick=latent_heat_kj_per_kg&errors=inline", "pressure_kpa_abs=1,5", "pick=liquid.phase&temperature_c=0",
+		"a=%zz", "temperature_c=1;2", "dryness_fraction=0.5&pressure_kpa_abs=5", "pick=advisories[0].code&temperature_c=5", "temperature_c=+5", "temperature_c=.5e1",
+	} {
+		f.Add(seed)
+	}
+	g := face(f, nil)
+	f.Fuzz(func(t *testing.T, query string) {
+		for _, path := range []string{"/v1/steam/saturation", "/v1/steam/state", "/v1/effects:solve"} {
+			target := &url.URL{Path: path, RawQuery: query}
+			request, err := http.NewRequestWithContext(t.Context(), http.MethodGet, "http://x/", http.NoBody)
+			if err != nil {
+				t.Fatal(err)
+			}
+			request.URL, request.RequestURI = target, target.String()
+			recorder := httptest.NewRecorder()
+			g.ServeHTTP(recorder, request)
+			text, err := io.ReadAll(recorder.Body)
+			if err != nil {
+				t.Fatal(err)
+			}
+			if kind := recorder.Header().Get("Content-Type"); strings.HasPrefix(kind, "text/plain") {
+				if recorder.Code >= 500 || strings.Contains(string(text), "\n") {
+					t.Fatalf("%d %q", recorder.Code, text)
+				}
+				continue
+			}
+			checkAnswered(t, recorder.Code, string(text), recorder.Header())
+		}
+	})
+}
+
+func TestNumbersThatAreRead(t *testing.T) {
+	g := face(t, nil)
+	for _, text := range []string{"60", "60.0", "6e1", "+60", "%2B60", "060"} {
+		code, body, _ := ask(g, "GET", "/v1/steam/saturation?temperature_c="+text+"&pick=temperature_c", "")
+		if want := text != "+60"; (code == 200) != want {
+			t.Errorf("%s: %d %s", text, code, body)
+		}
+	}
+}
