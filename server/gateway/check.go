@@ -139,9 +139,11 @@ func join(path, name string) string {
 	return path + "." + name
 }
 
-// clip keeps what a caller sent from filling the answer.
+// clip keeps what a caller sent from filling the answer, and from breaking it:
+// statuses carry valid UTF-8 only.
 func clip(s string) string {
 	const longest = 60
+	s = strings.ToValidUTF8(s, "\uFFFD")
 	r := []rune(s)
 	if len(r) > longest {
 		return string(r[:longest]) + "..."
