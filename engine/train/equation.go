@@ -46,9 +46,6 @@ var relationNames = [relations]string{
 	economyDefinition:     "economy",
 }
 
-// widest is how many numbers stand in the widest relation.
-const widest = 11
-
 // equation is a relation with the numbers that stand in it.
 type equation struct {
 	relation relation
@@ -63,13 +60,13 @@ func equationsOf(l *liquor.Liquor) []equation {
 	if l.RiseDependsOnSolids() {
 		equilibrium = append(equilibrium, SolidsOut)
 	}
-	energy := []Number{FeedFlow, FeedTemperature, Duty, HeatLoss, VapourFlow, VapourSaturationTemperature, BoilingTemperature, ProductFlow, Entrainment}
+	energy := []Number{FeedFlow, FeedTemperature, Duty, HeatLoss, VapourFlow, VapourSaturationTemperature, BoilingTemperature}
 	if l.EnthalpyDependsOnSolids() {
 		energy = append(energy, FeedSolids, SolidsOut)
 	}
 	return []equation{
 		{massBalance, []Number{FeedFlow, ProductFlow, VapourFlow, Entrainment}},
-		{solidsBalance, []Number{FeedFlow, FeedSolids, ProductFlow, VapourFlow, Entrainment, SolidsOut}},
+		{solidsBalance, []Number{FeedFlow, FeedSolids, VapourFlow, SolidsOut}},
 		{energyBalance, energy},
 		{chestBalance, []Number{Duty, SteamFlow, Vent, SteamTemperature, Superheat, Dryness, ChestTemperature, Subcooling}},
 		{rateEquation, []Number{Duty, Area, Coefficient, GasSideResistance, drivingForce}},
@@ -108,11 +105,11 @@ func residual(r relation, l *liquor.Liquor, v *state, d *gradient) (miss, size f
 		return v[FeedFlow] - out, math.Abs(v[FeedFlow]) + math.Abs(v[ProductFlow]) + math.Abs(v[VapourFlow]), nil
 
 	case solidsBalance:
-		// F wF = (L + e V) w
-		leaving := v[ProductFlow] + v[Entrainment]*v[VapourFlow]
-		d[FeedFlow], d[FeedSolids] = v[FeedSolids], v[FeedFlow]
-		d[ProductFlow], d[VapourFlow] = -v[SolidsOut], -v[Entrainment]*v[SolidsOut]
-		d[Entrainment], d[SolidsOut] = -v[VapourFlow]*v[SolidsOut], -leaving
+		// F wF = (F - V) w: product and entrained liquor have the same
+		// strength, and only the mass balance divides them.
+		leaving := v[FeedFlow] - v[VapourFlow]
+		d[FeedFlow], d[FeedSolids] = v[FeedSolids]-v[SolidsOut], v[FeedFlow]
+		d[VapourFlow], d[SolidsOut] = v[SolidsOut], -leaving
 		in, out := v[FeedFlow]*v[FeedSolids], leaving*v[SolidsOut]
 		return in - out, math.Abs(in) + math.Abs(out) + 1e-6*(math.Abs(v[FeedFlow])+math.Abs(leaving)), nil
 
@@ -172,7 +169,7 @@ func residual(r relation, l *liquor.Liquor, v *state, d *gradient) (miss, size f
 	}
 }
 
-// energyResidual: F hF + Q (1 - loss) = V Hv + (L + e V) hL.
+// energyResidual: F hF + Q (1 - loss) = V Hv + (F - V) hL.
 func energyResidual(l *liquor.Liquor, v *state, d *gradient) (miss, size float64, err error) {
 	hf, hfByW, hfByT := l.Enthalpy(v[FeedSolids], v[FeedTemperature])
 	hl, hlByW, hlByT := l.Enthalpy(v[SolidsOut], v[BoilingTemperature])
@@ -180,15 +177,14 @@ func energyResidual(l *liquor.Liquor, v *state, d *gradient) (miss, size float64
 	if err != nil {
 		return 0, 0, err
 	}
-	leaving := v[ProductFlow] + v[Entrainment]*v[VapourFlow]
-	d[FeedFlow] = hf
+	leaving := v[FeedFlow] - v[VapourFlow]
+	d[FeedFlow] = hf - hl
 	d[FeedSolids] = v[FeedFlow] * hfByW
 	d[FeedTemperature] = v[FeedFlow] * hfByT
 	d[Duty], d[HeatLoss] = 1-v[HeatLoss], -v[Duty]
-	d[VapourFlow] = -hv - v[Entrainment]*hl
+	d[VapourFlow] = hl - hv
 	d[VapourSaturationTemperature] = -v[VapourFlow] * hvByTw
 	d[BoilingTemperature] = -v[VapourFlow]*hvByT - leaving*hlByT
-	d[ProductFlow], d[Entrainment] = -hl, -v[VapourFlow]*hl
 	d[SolidsOut] = -leaving * hlByW
 	in := v[FeedFlow]*hf + v[Duty]*(1-v[HeatLoss])
 	out := v[VapourFlow]*hv + leaving*hl

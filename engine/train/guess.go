@@ -9,11 +9,17 @@ import (
 
 // strengths are where between the feed's solids and dry solids the attempts
 // start to look for the product: first from both ends of what is possible.
-var strengths = [starts]float64{0.05, 0.9, 0.5, 0.2}
+// forces are the driving forces in K that they start from, slower.
+var (
+	strengths = [...]float64{0.05, 0.9, 0.5, 0.2}
+	forces    = [...]float64{20, 5, 50, 100}
+)
 
 // guess sets first values for the numbers of a block: what the numbers
 // already known imply, completed by what is usual.
-func (s *search) guess(b *block, index, attempt int, v *state) {
+func (s *search) guess(b *block, attempt int, v *state) {
+	strength := strengths[attempt%len(strengths)]
+	usualForce := forces[attempt/len(strengths)%len(forces)]
 	w := *v
 	known := func(n Number) bool { return !math.IsNaN(w[n]) }
 	set := func(n Number, value float64) {
@@ -33,7 +39,6 @@ func (s *search) guess(b *block, index, attempt int, v *state) {
 		}
 	}
 	const (
-		usualForce = 20.0    // K
 		latent     = 2.25e6  // J/kg
 		usualHeat  = 3.8e3   // J/(kg K)
 		usualU     = 1.5e3   // W/(m2 K)
@@ -41,16 +46,19 @@ func (s *search) guess(b *block, index, attempt int, v *state) {
 		hotDryness = 2.675e6 // J/kg, vapour near 100 degC
 	)
 
-	// Solids.
+	// Solids: those of feed and product are tied by their flows.
 	tie(ProductSolids, SolidsOut)
-	if !known(FeedSolids) {
-		set(FeedSolids, w[SolidsOut]*(1-strengths[attempt]))
-		set(FeedSolids, 0.1)
+	left := math.NaN() // product per feed
+	if known(FeedFlow) && known(ProductFlow) && w[FeedFlow] > 0 {
+		left = math.Min(math.Max(w[ProductFlow]/w[FeedFlow], 0.01), 0.99)
 	}
-	if known(FeedFlow) && known(ProductFlow) && w[ProductFlow] > 0 {
-		set(SolidsOut, math.Min(0.99, w[FeedFlow]*w[FeedSolids]/w[ProductFlow]))
+	if !known(FeedSolids) && !known(SolidsOut) {
+		set(SolidsOut, strength)
 	}
-	set(SolidsOut, w[FeedSolids]+(1-w[FeedSolids])*strengths[attempt])
+	set(FeedSolids, w[SolidsOut]*left)
+	set(FeedSolids, w[SolidsOut]*(1-strength))
+	set(SolidsOut, math.Min(0.99, w[FeedSolids]/left))
+	set(SolidsOut, w[FeedSolids]+(1-w[FeedSolids])*strength)
 	tie(ProductSolids, SolidsOut)
 
 	// Temperatures.
@@ -69,7 +77,7 @@ func (s *search) guess(b *block, index, attempt int, v *state) {
 	if known(drivingForce) {
 		force = w[drivingForce]
 	}
-	force = math.Min(math.Max(force, 0.1), 100) * (1 + float64(attempt)/2)
+	force = math.Min(math.Max(force, 0.1), 100)
 	set(BoilingTemperature, w[ChestTemperature]-force)
 	set(BoilingTemperature, quantity.Zero+80)
 	set(ChestTemperature, w[BoilingTemperature]+force)

@@ -12,7 +12,8 @@ const (
 	tolerance     = 1e-11 // of an equation's own terms
 	iterationsMax = 80    // of one Newton run
 	singular      = 1e-11 // pivot ratio below which equations depend on each other
-	starts        = 4     // sets of first guesses tried for each block
+	startsLeast   = 2     // sets of first guesses tried for each block: from both ends
+	startsMost    = 16    // tried while none has led to an answer
 	branchesMax   = 4     // whole answers looked at
 )
 
@@ -56,7 +57,7 @@ type search struct {
 	iterations int     // of all Newton runs
 	residual   float64 // least of the worst residuals of failed runs
 	where      relation
-	dependent  *fault.Specification // set when equations turned out to depend on each other
+	dependent  *fault.Specification // set when the numbers given turned out to leave some open
 }
 
 func (s *search) from(i int, v state) {
@@ -72,10 +73,35 @@ func (s *search) from(i int, v state) {
 		return
 	}
 	b := &s.blocks[i]
+	roots := s.roots(b, v)
+	if len(roots) == 0 {
+		s.dead = append(s.dead, v)
+	}
+	for r := range roots {
+		s.from(i+1, roots[r])
+	}
+}
+
+// roots solves one block. A single curved equation is searched along its whole
+// range; anything else is approached from both ends of what is possible, and
+// from between while that leads nowhere.
+func (s *search) roots(b *block, v state) []state {
+	if s.sizeless(b, v) {
+		s.dependent = &fault.Specification{Missing: 1, Closers: s.question.paths(b)}
+		return nil
+	}
+	if len(b.numbers) == 1 && !b.plain() {
+		if roots := s.scan(b, v); len(roots) > 0 {
+			return roots
+		}
+	}
 	var roots []state
-	for attempt := range starts {
+	for attempt := range startsMost {
+		if attempt >= startsLeast && len(roots) > 0 {
+			break
+		}
 		root := v
-		s.guess(b, i, attempt, &root)
+		s.guess(b, attempt, &root)
 		if !s.newton(b, &root) {
 			continue
 		}
@@ -90,12 +116,60 @@ func (s *search) from(i int, v state) {
 			break
 		}
 	}
-	if len(roots) == 0 {
-		s.dead = append(s.dead, v)
+	return roots
+}
+
+// scan finds the roots of a single equation between the bounds of its number:
+// by sign changes on a grid, each narrowed by bisection and finished by
+// Newton.
+func (s *search) scan(b *block, v state) []state {
+	const (
+		cells      = 60
+		bisections = 30
+	)
+	n := b.numbers[0]
+	low, high := bounds(n)
+	var d gradient
+	at := func(x float64) float64 {
+		w := v
+		w[n] = x
+		miss, _, err := residual(b.equations[0].relation, s.question.liquor, &w, &d)
+		if err != nil {
+			return math.NaN()
+		}
+		return miss
 	}
-	for r := range roots {
-		s.from(i+1, roots[r])
+	// Pressures span decades; temperatures and fractions do not.
+	place := func(i int) float64 {
+		f := float64(i) / cells
+		if details[n].kind == pressure {
+			return low * math.Pow(high/low, f)
+		}
+		return low + (high-low)*f
 	}
+	var roots []state
+	left, before := place(0), at(place(0))
+	for i := 1; i <= cells; i++ {
+		right, after := place(i), at(place(i))
+		if before*after <= 0 && (before != 0 || i == 1) {
+			a, c, fa := left, right, before
+			for range bisections {
+				middle := (a + c) / 2
+				if f := at(middle); f*fa > 0 {
+					a, fa = middle, f
+				} else {
+					c = middle
+				}
+			}
+			root := v
+			root[n] = (a + c) / 2
+			if s.newton(b, &root) && (len(roots) == 0 || !same(b, &roots[len(roots)-1], &root)) {
+				roots = append(roots, root)
+			}
+		}
+		left, before = right, after
+	}
+	return roots
 }
 
 // plain reports whether a block has one root at most: a single equation that
@@ -281,6 +355,9 @@ func (s *search) advance(b *block, v *state, step, sizes []float64, worst float6
 // walks ran into, or failing that the answer that the equations have when
 // physical limits are set aside.
 func (s *search) refusal() error {
+	if s.dependent != nil {
+		return s.dependent
+	}
 	for i := range s.dead {
 		if why := impossible(&s.dead[i], s.question); why != nil {
 			return why
@@ -297,9 +374,6 @@ func (s *search) refusal() error {
 		if why := impossible(&free.dead[i], s.question); why != nil {
 			return why
 		}
-	}
-	if s.dependent != nil {
-		return s.dependent
 	}
 	return &fault.NotConverged{Iterations: s.iterations + free.iterations, Residual: s.residual, Where: relationNames[s.where]}
 }

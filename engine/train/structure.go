@@ -55,6 +55,9 @@ func (q *question) blocks() ([]block, error) {
 	if columns > 0 {
 		return nil, &fault.Specification{Missing: columns, Closers: q.closers(g, m, column)}
 	}
+	if !q.sized() {
+		return nil, &fault.Specification{Missing: 1, Closers: sizes()}
+	}
 	groups := g.Blocks(m)
 	blocks := make([]block, len(groups))
 	for i, group := range groups {
@@ -64,6 +67,52 @@ func (q *question) blocks() ([]block, error) {
 		}
 	}
 	return blocks, nil
+}
+
+// extensive are the numbers that grow with the plant. The equations hold for
+// a plant of any size, so one of these must be given: structure alone does not
+// see that.
+var extensive = [...]Number{FeedFlow, ProductFlow, SteamFlow, Area, VapourFlow, Duty, Evaporation}
+
+func (q *question) sized() bool {
+	for _, n := range extensive {
+		if q.fixed[n] {
+			return true
+		}
+	}
+	return false
+}
+
+// sizeless reports whether a block holds nothing that tells how large the plant
+// is: its numbers all grow with the plant, and with all of them at nothing its
+// equations are met.
+func (s *search) sizeless(b *block, v state) bool {
+	var d gradient
+	for _, n := range b.numbers {
+		grows := false
+		for _, m := range extensive {
+			grows = grows || n == m
+		}
+		if !grows {
+			return false
+		}
+		v[n] = 0
+	}
+	for i := range b.equations {
+		miss, _, err := residual(b.equations[i].relation, s.question.liquor, &v, &d)
+		if err != nil || miss != 0 {
+			return false
+		}
+	}
+	return true
+}
+
+func sizes() []string {
+	paths := make([]string, len(extensive))
+	for i, n := range extensive {
+		paths[i] = n.Path()
+	}
+	return paths
 }
 
 // conflict returns an irreducible set of given fields that contradict or
