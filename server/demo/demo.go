@@ -104,7 +104,7 @@ func Run(ctx context.Context, grpcAddress, httpURL string, out io.Writer) error 
   codes and licensed engineers decide on pressure parts, relief and operation.
 
   gRPC  %s (reflection is on)
-  REST  %s  (GET / lists the paths, GET /openapi.json describes them)
+  REST  %s (GET / lists the paths)
 
 Ask question A yourself:
 
