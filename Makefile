@@ -23,7 +23,9 @@ proto-lint:
 	$(BUF) lint
 
 proto-breaking:
-	$(BUF) breaking --path proto/calandria --against proto/baseline/calandria.binpb
+	@mkdir -p .cache
+	$(BUF) build --path proto/calandria -o .cache/now.binpb
+	$(BUF) breaking .cache/now.binpb --against proto/baseline/calandria.binpb
 
 generate:
 	go run ./proto/tools/vendorprotos

@@ -54,7 +54,11 @@ func TestReadmeIsTrue(t *testing.T) {
 			if err != nil {
 				t.Fatal(err)
 			}
-			defer os.RemoveAll(folder)
+			t.Cleanup(func() {
+				if err := os.RemoveAll(folder); err != nil {
+					t.Error(err)
+				}
+			})
 			program := filepath.Join(folder, "main.go")
 			if err := os.WriteFile(program, []byte(code), 0o600); err != nil {
 				t.Fatal(err)

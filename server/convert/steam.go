@@ -32,11 +32,11 @@ func SteamRequest(m *calandriav1.GetSteamStateRequest) (steam.State, error) {
 	given := present(map[string]*float64{pressureField: p, temperatureField: t, drynessField: x}, pressureField, temperatureField, drynessField)
 	switch {
 	case len(given) > 2:
-		return s, &fault.Specification{Over: true, Conflict: given}
+		return s, tooMany(given...)
 	case len(given) == 0:
-		return s, &fault.Specification{Missing: 2, Closers: []string{pressureField, temperatureField, drynessField}}
+		return s, tooFew(2, pressureField, temperatureField, drynessField)
 	case len(given) == 1:
-		return s, &fault.Specification{Missing: 1, Closers: others(given[0])}
+		return s, tooFew(1, others(given[0])...)
 	case x == nil:
 		s, err = steam.AtPressureTemperature(quantity.Kilopascals(*p), quantity.Celsius(*t))
 	case p != nil:
@@ -45,6 +45,14 @@ func SteamRequest(m *calandriav1.GetSteamStateRequest) (steam.State, error) {
 		s, err = steam.AtTemperatureDryness(quantity.Celsius(*t), quantity.Fraction(*x))
 	}
 	return s, inFields(err)
+}
+
+func tooMany(fields ...string) error {
+	return &fault.Specification{Over: true, Conflict: fields, Missing: 0, Closers: nil}
+}
+
+func tooFew(missing int, fields ...string) error {
+	return &fault.Specification{Over: false, Conflict: nil, Missing: missing, Closers: fields}
 }
 
 func present(values map[string]*float64, order ...string) []string {
@@ -90,9 +98,9 @@ func SaturationRequest(m *calandriav1.GetSaturationRequest) (liquid, vapour stea
 	p, t := m.PressureKpaAbs, m.TemperatureC
 	switch {
 	case p != nil && t != nil:
-		return liquid, vapour, &fault.Specification{Over: true, Conflict: []string{pressureField, temperatureField}}
+		return liquid, vapour, tooMany(pressureField, temperatureField)
 	case p == nil && t == nil:
-		return liquid, vapour, &fault.Specification{Missing: 1, Closers: []string{pressureField, temperatureField}}
+		return liquid, vapour, tooFew(1, pressureField, temperatureField)
 	case t != nil:
 		liquid, vapour, err = steam.Saturation(quantity.Celsius(*t))
 		return liquid, vapour, inFields(err)

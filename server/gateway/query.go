@@ -84,14 +84,8 @@ func (c *check) parameter(m *dynamicpb.Message, key string, values []string) {
 				c.add(path, "a group", "one of its fields", "Name one of "+strings.Join(namesOf(field.Message()), ", ")+", such as "+path+"."+namesOf(field.Message())[0]+".")
 				return
 			}
-			parent := path
-			if at := strings.LastIndex(path, "."); at >= 0 {
-				parent = path[:at]
-			} else {
-				parent = ""
-			}
 			if !m.Has(field) {
-				c.oneof(m, field, parent)
+				c.oneof(m, field, strings.Join(names[:i], "."))
 			}
 			inner, ok := m.Mutable(field).Message().Interface().(*dynamicpb.Message)
 			if !ok {
