@@ -35,7 +35,6 @@ const (
 	HeldBeyondStrength                 // figures used at a strength other than their own
 	FeedFlashes                        // the feed enters hotter than it boils
 	SmallDrivingForce                  // the area is very sensitive to any temperature
-	Safety                             // a caution about people
 )
 
 // Advisory is a remark on a result that stands.

@@ -37,14 +37,8 @@ func Celsius(v float64) Temperature { return Temperature(v + Zero) }
 // Celsius reads t in degC.
 func (t Temperature) Celsius() float64 { return float64(t) - Zero }
 
-// TemperatureDifference is a difference of temperatures in K.
-type TemperatureDifference float64
-
 // MassFlow is a mass flow in kg/s.
 type MassFlow float64
-
-// KilogramsPerHour makes a MassFlow from kg/h.
-func KilogramsPerHour(v float64) MassFlow { return MassFlow(v / secondsPerHour) }
 
 // KilogramsPerHour reads m in kg/h.
 func (m MassFlow) KilogramsPerHour() float64 { return float64(m) * secondsPerHour }
@@ -55,42 +49,6 @@ type Enthalpy float64
 // KilojoulesPerKilogram makes an Enthalpy from kJ/kg.
 func KilojoulesPerKilogram(v float64) Enthalpy { return Enthalpy(v * joulePerKilojoule) }
 
-// KilojoulesPerKilogram reads h in kJ/kg.
-func (h Enthalpy) KilojoulesPerKilogram() float64 { return float64(h) / joulePerKilojoule }
-
-// Entropy is a specific entropy in J/(kg K); a specific heat has the same
-// unit and uses SpecificHeat.
-type Entropy float64
-
-// KilojoulesPerKilogramKelvin makes an Entropy from kJ/(kg K).
-func KilojoulesPerKilogramKelvin(v float64) Entropy { return Entropy(v * joulePerKilojoule) }
-
-// KilojoulesPerKilogramKelvin reads s in kJ/(kg K).
-func (s Entropy) KilojoulesPerKilogramKelvin() float64 { return float64(s) / joulePerKilojoule }
-
-// SpecificHeat is a specific heat in J/(kg K).
-type SpecificHeat float64
-
-// KilojoulesPerKilogramKelvin reads c in kJ/(kg K).
-func (c SpecificHeat) KilojoulesPerKilogramKelvin() float64 {
-	return float64(c) / joulePerKilojoule
-}
-
-// SpecificVolume is a volume per mass in m3/kg.
-type SpecificVolume float64
-
-// Density reads the density that belongs to v, in kg/m3.
-func (v SpecificVolume) Density() float64 { return 1 / float64(v) }
-
 // Fraction is a mass fraction in kg/kg, 0 to 1: solids of a liquor, dryness
 // of steam.
 type Fraction float64
-
-// Power is a heat flow in W.
-type Power float64
-
-// Kilowatts makes a Power from kW.
-func Kilowatts(v float64) Power { return Power(v * joulePerKilojoule) }
-
-// Kilowatts reads q in kW.
-func (q Power) Kilowatts() float64 { return float64(q) / joulePerKilojoule }

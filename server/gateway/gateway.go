@@ -319,10 +319,7 @@ func (g *Gateway) forward(a *answer, r *http.Request, o options, query string, b
 
 // fail is how the generated handlers report a failure.
 func (g *Gateway) fail(ctx context.Context, _ *runtime.ServeMux, _ runtime.Marshaler, w http.ResponseWriter, r *http.Request, err error) {
-	o, _ := ctx.Value(optionsKey{}).(options)
-	if fromRequest, ok := r.Context().Value(optionsKey{}).(options); ok {
-		o = fromRequest
-	}
+	o, _ := r.Context().Value(optionsKey{}).(options)
 	s, known := statuses.From(err, telemetry.ID(r.Context()))
 	if !known {
 		g.log.LogAttrs(ctx, slog.LevelError, "fault of the REST face", slog.String("id", telemetry.ID(r.Context())), slog.String("error", err.Error()))
