@@ -139,10 +139,12 @@ func From(err error, id string) (s *status.Status, known bool) {
 	if s, ok := status.FromError(err); ok && len(s.Details()) > 0 {
 		return s, true
 	}
-	switch {
-	case errors.Is(err, context.DeadlineExceeded):
+	// The transport ends a call with a bare status, handlers with an error of
+	// the context; neither's own text is shown.
+	switch code := status.Code(err); {
+	case code == codes.DeadlineExceeded, errors.Is(err, context.DeadlineExceeded):
 		return New(calandriav1.Reason_REASON_DEADLINE, "The time allowed for the answer ran out.", nil), true
-	case errors.Is(err, context.Canceled):
+	case code == codes.Canceled, errors.Is(err, context.Canceled):
 		return New(calandriav1.Reason_REASON_CANCELED, "The caller gave up waiting.", nil), true
 	}
 	faults, all := flatten(err)
