@@ -54,6 +54,9 @@ func wordViolation(field string, v *protovalidate.Violation, d protoreflect.Mess
 		}
 	}
 	limit := Limit(at)
+	if elements[len(elements)-1].GetSubscript() != nil {
+		limit = limitOfItem(at)
+	}
 	value := shown(v.FieldValue)
 	return &calandriav1.Violation{
 		Field: field, Value: value, Limit: limit,
@@ -135,6 +138,22 @@ func Limit(d protoreflect.FieldDescriptor) string {
 		return limitOfNumber(number, convert.Unit(string(d.Name())))
 	}
 	return "given"
+}
+
+// limitOfItem words the rules of one item of a list.
+func limitOfItem(d protoreflect.FieldDescriptor) string {
+	rules, ok := proto.GetExtension(d.Options(), validate.E_Field).(*validate.FieldRules)
+	if !ok {
+		return "valid"
+	}
+	items := rules.GetRepeated().GetItems()
+	if in := items.GetString().GetIn(); len(in) > 0 {
+		return "one of " + strings.Join(in, ", ")
+	}
+	if number := items.GetDouble(); number != nil {
+		return limitOfNumber(number, convert.Unit(string(d.Name())))
+	}
+	return "valid"
 }
 
 func limitOfNumber(r *validate.DoubleRules, unit string) string {
