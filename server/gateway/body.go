@@ -8,6 +8,8 @@ import (
 	"io"
 	"regexp"
 	"strconv"
+	"strings"
+	"unicode/utf16"
 	"unicode/utf8"
 
 	"google.golang.org/protobuf/reflect/protoreflect"
@@ -22,6 +24,10 @@ func checkBody(body []byte, d protoreflect.MessageDescriptor, depthMax int) []*c
 	b := &bodyCheck{body: body, depthMax: depthMax}
 	if len(bytes.TrimSpace(body)) == 0 {
 		b.add("", "empty", "a JSON object", "Send the request as JSON.")
+		return b.violations
+	}
+	if bytes.HasPrefix(body, []byte("\ufeff")) {
+		b.add("", "begun with a byte-order mark", "JSON in UTF-8 without one", "Save the text as UTF-8 without byte-order mark (BOM).")
 		return b.violations
 	}
 	if !utf8.Valid(body) {
@@ -126,9 +132,17 @@ func (b *bodyCheck) list(m *dynamicpb.Message, field protoreflect.FieldDescripto
 	}
 	list := m.Mutable(field).List()
 	for i := 0; b.tokens.More(); i++ {
-		err := b.single(field, fmt.Sprintf("%s[%d]", path, i), depth+1, func(v protoreflect.Value) { list.Append(v) })
+		item := fmt.Sprintf("%s[%d]", path, i)
+		err := b.single(field, item, depth+1, func(v protoreflect.Value) { list.Append(v) })
 		if err != nil {
 			return err
+		}
+		if list.Len() == i { // a faulty item keeps its place, so that the others keep theirs
+			list.Append(list.NewElement())
+			if b.unread == nil {
+				b.unread = map[string]bool{}
+			}
+			b.unread[item] = true
 		}
 	}
 	_, err = b.tokens.Token() // the closing bracket
@@ -137,13 +151,18 @@ func (b *bodyCheck) list(m *dynamicpb.Message, field protoreflect.FieldDescripto
 
 // single reads one value of a field and hands it to set if it is right.
 func (b *bodyCheck) single(field protoreflect.FieldDescriptor, path string, depth int, set func(protoreflect.Value)) error {
+	start := b.tokens.InputOffset()
 	token, err := b.tokens.Token()
 	if err != nil {
 		return err
 	}
 	if field.Kind() == protoreflect.MessageKind {
 		if token != json.Delim('{') {
-			b.add(path, kindOf(token), "an object in braces", "Its fields are "+fmt.Sprint(namesOf(field.Message()))+".")
+			wayOut := "Its fields are " + strings.Join(namesOf(field.Message()), ", ") + "."
+			if token == nil {
+				wayOut = "Leave it out. " + wayOut
+			}
+			b.add(path, kindOf(token), "an object in braces", wayOut)
 			return b.skipRest(token, depth)
 		}
 		inner := dynamicpb.NewMessage(field.Message())
@@ -178,12 +197,46 @@ func (b *bodyCheck) single(field protoreflect.FieldDescriptor, path string, dept
 			b.add(path, kindOf(token), "a text in quotes", "Put it into quotes.")
 			return b.skipRest(token, depth)
 		}
+		if halfPair(b.body[start:b.tokens.InputOffset()]) {
+			b.add(path, "half of a surrogate pair", "whole characters", "Send the character itself, or both of its \\u escapes.")
+			return nil
+		}
 		set(protoreflect.ValueOfString(v))
 	default:
 		b.add(path, kindOf(token), "not in this request", "Leave it out.")
 		return b.skipRest(token, depth)
 	}
 	return nil
+}
+
+// halfPair tells whether JSON text escapes one half of a surrogate pair only.
+// This package's reader would put a replacement character in its place, but
+// the one that reads the request for the call refuses it.
+func halfPair(text []byte) bool {
+	const escape = 6 // as in \ud83d
+	unit := func(i int) rune {
+		if i+escape > len(text) || text[i] != '\\' || text[i+1] != 'u' {
+			return -1
+		}
+		u, err := strconv.ParseUint(string(text[i+2:i+escape]), 16, 16)
+		if err != nil {
+			return -1
+		}
+		return rune(u)
+	}
+	for i := 0; i < len(text); i++ {
+		if text[i] != '\\' {
+			continue
+		}
+		if u := unit(i); !utf16.IsSurrogate(u) {
+			i++ // past what is escaped, which may be a backslash
+			continue
+		} else if utf16.DecodeRune(u, unit(i+escape)) == utf8.RuneError {
+			return true
+		}
+		i += 2*escape - 1
+	}
+	return false
 }
 
 // skip passes over the next value.

@@ -26,16 +26,18 @@ const violationsMax = 100
 type check struct {
 	violations []*calandriav1.Violation
 	faulty     map[string]bool // paths that have a violation
+	chosen     map[string]bool // oneofs of which a member is given, right or wrong
+	unread     map[string]bool // items of lists that could not be read and stand there empty
 }
 
 func (c *check) add(field, value, limit, wayOut string) {
+	if c.full() {
+		return
+	}
 	if c.faulty == nil {
 		c.faulty = map[string]bool{}
 	}
 	c.faulty[field] = true
-	if len(c.violations) >= violationsMax {
-		return
-	}
 	subject := field
 	if subject == "" {
 		subject = "The request"
@@ -44,10 +46,13 @@ func (c *check) add(field, value, limit, wayOut string) {
 	c.violations = append(c.violations, &calandriav1.Violation{Field: field, Value: value, Limit: limit, Detail: strings.TrimSpace(detail)})
 }
 
+// full tells whether an answer has room for no more violations.
+func (c *check) full() bool { return len(c.violations) >= violationsMax }
+
 // rules applies the protos' rules to what could be read, beside what could
 // not.
 func (c *check) rules(m *dynamicpb.Message) {
-	if len(c.violations) == 0 {
+	if len(c.violations) == 0 || c.full() {
 		return // the call itself will apply them
 	}
 	err := protovalidate.Validate(m)
@@ -59,16 +64,33 @@ func (c *check) rules(m *dynamicpb.Message) {
 		return
 	}
 	for _, v := range more {
-		if !c.faulty[v.GetField()] && len(c.violations) < violationsMax {
+		if !c.known(v.GetField()) && !c.full() {
 			c.violations = append(c.violations, v)
 		}
 	}
+}
+
+// known tells whether a complaint about path would repeat one that is made: a
+// value that could not be read leaves a gap, to which rules object too.
+func (c *check) known(path string) bool {
+	if c.faulty[path] || c.chosen[path] {
+		return true
+	}
+	for i := range path {
+		if path[i] == ']' && c.unread[path[:i+1]] {
+			return true
+		}
+	}
+	return false
 }
 
 // field finds a field by its name in the proto.
 func (c *check) field(d protoreflect.MessageDescriptor, path, name string) protoreflect.FieldDescriptor {
 	if f := d.Fields().ByName(protoreflect.Name(name)); f != nil {
 		return f
+	}
+	if c.full() {
+		return nil // nobody would read a hint
 	}
 	full := join(path, clip(name))
 	if f := d.Fields().ByJSONName(name); f != nil {
@@ -94,6 +116,10 @@ func (c *check) oneof(m *dynamicpb.Message, f protoreflect.FieldDescriptor, path
 	if group == nil || group.IsSynthetic() {
 		return
 	}
+	if c.chosen == nil {
+		c.chosen = map[string]bool{}
+	}
+	c.chosen[join(path, string(group.Name()))] = true
 	if other := m.WhichOneof(group); other != nil && other != f {
 		c.add(join(path, string(f.Name())), "given beside "+string(other.Name()), "one of the two", "Drop one of them.")
 	}

@@ -8,6 +8,7 @@ import (
 	"net/http"
 	"net/http/httptest"
 	"net/url"
+	"slices"
 	"strings"
 	"testing"
 
@@ -169,5 +170,90 @@ func TestNumbersThatAreRead(t *testing.T) {
 		if want := text != "+60"; (code == 200) != want {
 			t.Errorf("%s: %d %s", text, code, body)
 		}
+	}
+}
+
+const rest = `"feed":{"flow_kg_per_h":1000,"solids_fraction":0.1,"temperature_c":50},"product":{"solids_fraction":0.4},"steam":{"pressure_kpa_abs":200},"effect":{"pressure_kpa_abs":20,"coefficient_w_per_m2_k":2000}`
+
+// TestViolationsStandAtTheirFields asks for exactly the violations that there
+// are: each at its own field, none twice, none that only follows from another.
+func TestViolationsStandAtTheirFields(t *testing.T) {
+	g := face(t, nil)
+	liquor := func(text string) string { return `{"custom_liquor":{` + text + `},` + rest + `}` }
+	const heat = `,"specific_heat_kj_per_kg_k":4`
+	for _, c := range []struct {
+		name, body string
+		fields     []string
+	}{
+		{"half a surrogate pair", liquor(`"source":"\ud800","rise_k":0` + heat), []string{"custom_liquor.source"}},
+		{"second half first", liquor(`"source":"\udc00\ud800","rise_k":0` + heat), []string{"custom_liquor.source"}},
+		{"bad member of a choice", liquor(`"rise_k":"x"` + heat), []string{"custom_liquor.rise_k"}},
+		{"bad item before a bad number", liquor(`"rise_polynomial":{"coefficients_k":["x",1e9]}` + heat),
+			[]string{"custom_liquor.rise_polynomial.coefficients_k[0]", "custom_liquor.rise_polynomial.coefficients_k[1]"}},
+		{"only bad items", liquor(`"rise_polynomial":{"coefficients_k":[null]}` + heat), []string{"custom_liquor.rise_polynomial.coefficients_k[0]"}},
+		{"bad group before a bad group", liquor(`"duhring":{"lines":[5,{"solids_fraction":2,"slope":1,"intercept_c":0}]}` + heat),
+			[]string{"custom_liquor.duhring.lines[0]", "custom_liquor.duhring.lines[1].solids_fraction"}},
+		{"twice, and bad inside", `{"custom_liquor":{"rise_k":0` + heat + `},"feed":{},` + strings.Replace(rest, `:0.1`, `:18`, 1) + `}`,
+			[]string{"feed", "feed.solids_fraction"}},
+		{"byte-order mark", "\ufeff{}", []string{""}},
+	} {
+		code, body, header := ask(g, "POST", "/v1/effects:solve", c.body)
+		checkAnswered(t, code, body, header)
+		var problem Problem
+		if err := json.Unmarshal([]byte(body), &problem); err != nil {
+			t.Fatal(err)
+		}
+		var fields []string
+		for _, e := range problem.Errors {
+			fields = append(fields, e.Field)
+		}
+		if code != 400 || !slices.Equal(fields, c.fields) {
+			t.Errorf("%s: %d at %q, want %q: %s", c.name, code, fields, c.fields, body)
+		}
+	}
+	// What only looks like half a pair.
+	for _, source := range []string{`\ud83d\udca7`, `\\ud800`, `\u00e9\\`, "\U0001F4A7", `\ufffd`} {
+		if code, body, _ := ask(g, "POST", "/v1/effects:solve", liquor(`"source":"`+source+`","rise_k":0`+heat)); code != 200 {
+			t.Errorf("%s: %d %s", source, code, body)
+		}
+	}
+}
+
+// TestManyUnknownNames sends thousands of them; the answer lists no more than
+// a person can read.
+func TestManyUnknownNames(t *testing.T) {
+	names := strings.Repeat(`"specific_heat_of_something":1,`, 30_000)
+	code, body, header := ask(face(t, nil), "POST", "/v1/effects:solve", `{`+names+`"a":1}`)
+	checkAnswered(t, code, body, header)
+	if n := strings.Count(body, `"field":`); n != violationsMax {
+		t.Errorf("%d violations", n)
+	}
+}
+
+// TestTextsInQueries holds texts that are not UTF-8 back from the call.
+func TestTextsInQueries(t *testing.T) {
+	const path = "/v1/effects:solve?custom_liquor.rise_k=0&custom_liquor.specific_heat_kj_per_kg_k=4&feed.flow_kg_per_h=1000&feed.solids_fraction=0.1&feed.temperature_c=50&product.solids_fraction=0.4&steam.pressure_kpa_abs=200&effect.pressure_kpa_abs=20&effect.coefficient_w_per_m2_k=2000"
+	g := face(t, nil)
+	for query, want := range map[string]int{"&custom_liquor.source=caf%C3%A9": 200, "&custom_liquor.source=caf%E9": 400, "&find=%ff": 400} {
+		if code, body, _ := ask(g, "GET", path+query, ""); code != want {
+			t.Errorf("%s: %d %s", query, code, body)
+		}
+	}
+}
+
+// TestGivenUp ends calls from outside while they are worked on.
+func TestGivenUp(t *testing.T) {
+	var log strings.Builder
+	ctx, cancel := context.WithCancel(t.Context())
+	g := face(t, func(inner context.Context, _ any, _ *grpc.UnaryServerInfo, _ grpc.UnaryHandler) (any, error) {
+		cancel()
+		<-inner.Done()
+		return nil, inner.Err()
+	})
+	g.log = slog.New(slog.NewTextHandler(&log, nil))
+	recorder := httptest.NewRecorder()
+	g.ServeHTTP(recorder, httptest.NewRequest("GET", "/v1/engine", nil).WithContext(ctx))
+	if recorder.Code != 499 || strings.Contains(log.String(), "level=ERROR") {
+		t.Errorf("%d %s, log %s", recorder.Code, recorder.Body, log.String())
 	}
 }

@@ -4,6 +4,7 @@ import (
 	"net/url"
 	"slices"
 	"strings"
+	"unicode/utf8"
 
 	"google.golang.org/protobuf/reflect/protoreflect"
 	"google.golang.org/protobuf/types/dynamicpb"
@@ -112,6 +113,10 @@ func (c *check) parameter(m *dynamicpb.Message, key string, values []string) {
 				}
 				v = protoreflect.ValueOfFloat64(number)
 			} else {
+				if !utf8.ValidString(value) {
+					c.add(path, "not UTF-8 text", "text in UTF-8", "Encode its UTF-8 bytes as %XX.")
+					continue
+				}
 				v = protoreflect.ValueOfString(value)
 			}
 			if field.IsList() {
