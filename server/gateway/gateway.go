@@ -13,6 +13,7 @@ import (
 	"log/slog"
 	"mime"
 	"net/http"
+	"net/url"
 	"runtime/debug"
 	"strconv"
 	"strings"
@@ -164,22 +165,28 @@ func (g *Gateway) ServeHTTP(w http.ResponseWriter, r *http.Request) {
 
 // guarded answers a request whatever happens inside.
 func (g *Gateway) guarded(a *answer, r *http.Request) {
+	var o options
+	if r.Method == http.MethodGet || r.Method == http.MethodHead {
+		// A cell that picks reads one line whatever goes wrong.
+		values, _ := url.ParseQuery(r.URL.RawQuery)
+		o = optionsOf(values)
+	}
 	defer func() {
 		if v := recover(); v != nil {
 			id := telemetry.ID(r.Context())
 			g.log.LogAttrs(r.Context(), slog.LevelError, "panic", slog.String("id", id), slog.Any("value", v), slog.String("stack", string(debug.Stack())))
 			a.body.Reset()
 			a.status = 0
-			g.refuse(a, r, options{}, statuses.Internal(id), 0)
+			g.refuse(a, r, o, statuses.Internal(id), 0)
 		}
 	}()
-	g.serve(a, r)
+	g.serve(a, r, o)
 }
 
-func (g *Gateway) serve(a *answer, r *http.Request) {
+func (g *Gateway) serve(a *answer, r *http.Request, o options) {
 	const targetTooLong = http.StatusRequestURITooLong
 	if len(r.RequestURI) > g.limits.TargetBytes {
-		g.refuse(a, r, options{}, tooLarge("path and query", len(r.RequestURI), g.limits.TargetBytes), targetTooLong)
+		g.refuse(a, r, o, tooLarge("path and query", len(r.RequestURI), g.limits.TargetBytes), targetTooLong)
 		return
 	}
 	method := r.Method
@@ -193,17 +200,17 @@ func (g *Gateway) serve(a *answer, r *http.Request) {
 	}
 	switch {
 	case len(allowed) == 0:
-		g.refuse(a, r, options{}, statuses.New(calandriav1.Reason_REASON_NOT_FOUND, "There is nothing at "+clip(r.URL.Path)+"; GET / lists the paths.", nil), 0)
+		g.refuse(a, r, o, statuses.New(calandriav1.Reason_REASON_NOT_FOUND, "There is nothing at "+clip(r.URL.Path)+"; GET / lists the paths.", nil), 0)
 	case method == http.MethodOptions:
 		a.header.Set("Allow", strings.Join(allowed, ", "))
 		a.WriteHeader(http.StatusNoContent)
 	case isPage && method == http.MethodGet:
 		if r.URL.RawQuery != "" {
-			_, _, violations := checkQuery(r.URL.RawQuery, (&calandriav1.GetEngineRequest{}).ProtoReflect().Descriptor())
-			if len(violations) > 0 {
-				g.refuse(a, r, options{}, statuses.Invalid(violations...), 0)
-				return
-			}
+			g.refuse(a, r, o, statuses.Invalid(&calandriav1.Violation{
+				Value: "?" + clip(r.URL.RawQuery), Limit: "no query",
+				Detail: "?" + clip(r.URL.RawQuery) + " is not for " + r.URL.Path + ", which takes no query. Leave it out.",
+			}), 0)
+			return
 		}
 		if r.URL.Path == "/readyz" && !g.ready() {
 			g.refuse(a, r, options{}, statuses.New(calandriav1.Reason_REASON_UNAVAILABLE, "The service is starting or stopping.", nil), 0)
@@ -214,9 +221,9 @@ func (g *Gateway) serve(a *answer, r *http.Request) {
 		a.WriteHeader(http.StatusOK)
 	case found == nil:
 		a.header.Set("Allow", strings.Join(allowed, ", "))
-		g.refuse(a, r, options{}, statuses.New(calandriav1.Reason_REASON_METHOD_NOT_ALLOWED, clip(r.Method)+" is not for "+r.URL.Path+"; use "+strings.Join(allowed, ", ")+".", nil), 0)
+		g.refuse(a, r, o, statuses.New(calandriav1.Reason_REASON_METHOD_NOT_ALLOWED, clip(r.Method)+" is not for "+r.URL.Path+"; use "+strings.Join(allowed, ", ")+".", nil), 0)
 	case method == http.MethodGet:
-		g.get(a, r, found)
+		g.get(a, r, found, o)
 	default:
 		g.post(a, r, found)
 	}
@@ -230,8 +237,8 @@ func (g *Gateway) page(path string) (page, bool) {
 	return p, ok
 }
 
-func (g *Gateway) get(a *answer, r *http.Request, found *route) {
-	o, rest, violations := checkQuery(r.URL.RawQuery, found.rpc.Input())
+func (g *Gateway) get(a *answer, r *http.Request, found *route, o options) {
+	rest, violations := checkQuery(r.URL.RawQuery, found.rpc.Input())
 	var steps []step
 	if o.pick != "" {
 		var violation *calandriav1.Violation

@@ -257,3 +257,49 @@ func TestGivenUp(t *testing.T) {
 		t.Errorf("%d %s, log %s", recorder.Code, recorder.Body, log.String())
 	}
 }
+
+// TestPickIsAnsweredOnOneLine holds every refusal of a call that picks to one
+// line that a spreadsheet cell can show, whatever refused it.
+func TestPickIsAnsweredOnOneLine(t *testing.T) {
+	recovering := telemetry.Unary(slog.New(slog.DiscardHandler))
+	g := face(t, func(ctx context.Context, request any, info *grpc.UnaryServerInfo, _ grpc.UnaryHandler) (any, error) {
+		return recovering(ctx, request, info, func(context.Context, any) (any, error) { panic("secret of the house") })
+	})
+	for _, c := range []struct {
+		target string
+		status int
+	}{
+		{"/v1/steam/saturated?pick=temperature_c", 404},
+		{"/openapi.json?pick=info", 400},
+		{"/v1/steam/saturation?temperature_c=5&pick=temperature_c&pick=region", 400},
+		{"/v1/steam/saturation?temperature_c=5&pick=temperature_c&x=%zz", 400},
+		{"/v1/steam/saturation?pick=temperature_c&x=" + strings.Repeat("y", 9000), 414},
+		{"/v1/steam/saturation?temperature_c=5&pick=temperature_c", 500},
+	} {
+		for _, inline := range []string{"", "&errors=inline"} {
+			want := c.status
+			if inline != "" {
+				want = 200
+			}
+			code, body, header := ask(g, "GET", c.target+inline, "")
+			if code != want || !strings.HasPrefix(body, "ERROR ") || strings.ContainsAny(body, "\n{") || strings.Contains(body, "secret") ||
+				header.Get("Content-Type") != "text/plain; charset=utf-8" || header.Get("Cache-Control") != "no-store" {
+				t.Errorf("%.60s%s: %d %q %v, want %d", c.target, inline, code, body, header, want)
+			}
+		}
+	}
+}
+
+// TestTagsOnSeveralLines gives If-None-Match twice, as HTTP allows.
+func TestTagsOnSeveralLines(t *testing.T) {
+	g := face(t, nil)
+	_, _, header := ask(g, "GET", "/v1/engine", "")
+	request := httptest.NewRequest(http.MethodGet, "/v1/engine", http.NoBody)
+	request.Header.Add("If-None-Match", `"other"`)
+	request.Header.Add("If-None-Match", header.Get("Etag"))
+	recorder := httptest.NewRecorder()
+	g.ServeHTTP(recorder, request)
+	if recorder.Code != http.StatusNotModified || recorder.Body.Len() != 0 {
+		t.Errorf("%d %q", recorder.Code, recorder.Body)
+	}
+}

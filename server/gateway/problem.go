@@ -108,7 +108,7 @@ func (g *Gateway) settle(a *answer, r *http.Request) {
 	// An engine may be replaced by a newer one at any time: ask again, but do
 	// not send again.
 	a.header.Set("Cache-Control", "no-cache")
-	for _, have := range strings.Split(r.Header.Get("If-None-Match"), ",") {
+	for _, have := range strings.Split(strings.Join(r.Header.Values("If-None-Match"), ","), ",") {
 		if have = strings.TrimPrefix(strings.TrimSpace(have), "W/"); have == tag || have == "*" {
 			a.status = http.StatusNotModified
 		}

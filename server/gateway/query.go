@@ -25,10 +25,17 @@ type options struct {
 	inline bool
 }
 
+// optionsOf reads what can be read of the parameters of the REST face, which
+// say how to answer even if something is wrong with the query.
+func optionsOf(values url.Values) options {
+	modes := values[errorsParameter]
+	pick := values.Get(pickParameter)
+	return options{pick: pick, inline: pick != "" && len(modes) == 1 && modes[0] == errorsInline}
+}
+
 // checkQuery reads a query strictly against a message and returns all that is
 // wrong with it. rest is the query without the parameters of the REST face.
-// What it could read of those is in o even if something else is wrong.
-func checkQuery(raw string, d protoreflect.MessageDescriptor) (o options, rest string, violations []*calandriav1.Violation) {
+func checkQuery(raw string, d protoreflect.MessageDescriptor) (rest string, violations []*calandriav1.Violation) {
 	var c check
 	values, err := url.ParseQuery(raw)
 	if err != nil {
@@ -40,11 +47,8 @@ func checkQuery(raw string, d protoreflect.MessageDescriptor) (o options, rest s
 		c.add(pickParameter, "given twice", "once", "Pick one value a call.")
 	case len(picks) == 1 && picks[0] == "":
 		c.add(pickParameter, "empty", "the path of one value", "Name a value of the answer, such as latent_heat_kj_per_kg.")
-	case len(picks) == 1:
-		o.pick = picks[0]
 	}
 	if len(modes) > 0 {
-		o.inline = len(modes) == 1 && modes[0] == errorsInline && len(picks) > 0
 		if len(modes) > 1 || modes[0] != errorsInline {
 			c.add(errorsParameter, clip(strings.Join(modes, ", ")), errorsInline, "Leave it out, or give errors=inline.")
 		} else if len(picks) == 0 {
@@ -63,7 +67,7 @@ func checkQuery(raw string, d protoreflect.MessageDescriptor) (o options, rest s
 		c.parameter(m, key, values[key])
 	}
 	c.rules(m)
-	return o, values.Encode(), c.violations
+	return values.Encode(), c.violations
 }
 
 // parameter puts one parameter into m, or complains.
