@@ -115,10 +115,10 @@ func Limit(d protoreflect.FieldDescriptor) string {
 	if repeated := rules.GetRepeated(); repeated != nil {
 		var parts []string
 		if repeated.HasMinItems() {
-			parts = append(parts, fmt.Sprintf("at least %d items", repeated.GetMinItems()))
+			parts = append(parts, fmt.Sprintf("at least %s", items(repeated.GetMinItems())))
 		}
 		if repeated.HasMaxItems() {
-			parts = append(parts, fmt.Sprintf("at most %d items", repeated.GetMaxItems()))
+			parts = append(parts, fmt.Sprintf("at most %s", items(repeated.GetMaxItems())))
 		}
 		if repeated.GetUnique() {
 			parts = append(parts, "each once")
@@ -140,17 +140,24 @@ func Limit(d protoreflect.FieldDescriptor) string {
 	return "given"
 }
 
+func items(n uint64) string {
+	if n == 1 {
+		return "1 item"
+	}
+	return strconv.FormatUint(n, 10) + " items"
+}
+
 // limitOfItem words the rules of one item of a list.
 func limitOfItem(d protoreflect.FieldDescriptor) string {
 	rules, ok := proto.GetExtension(d.Options(), validate.E_Field).(*validate.FieldRules)
 	if !ok {
 		return "valid"
 	}
-	items := rules.GetRepeated().GetItems()
-	if in := items.GetString().GetIn(); len(in) > 0 {
+	item := rules.GetRepeated().GetItems()
+	if in := item.GetString().GetIn(); len(in) > 0 {
 		return "one of " + strings.Join(in, ", ")
 	}
-	if number := items.GetDouble(); number != nil {
+	if number := item.GetDouble(); number != nil {
 		return limitOfNumber(number, convert.Unit(string(d.Name())))
 	}
 	return "valid"
