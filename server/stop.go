@@ -38,13 +38,15 @@ func (d *drain) watch(c net.Conn, state http.ConnState) {
 	d.open[c] = connection{state, time.Now()}
 }
 
-// telling adds to answers during a stop that the connection closes.
+// telling adds to answers during a stop that the connection closes. Over
+// HTTP/2 net/http makes a GOAWAY of that header: without it a caller with
+// many requests on one connection would hold the stop up until its deadline.
 func (d *drain) telling(next http.Handler) http.Handler {
 	return http.HandlerFunc(func(w http.ResponseWriter, r *http.Request) {
 		d.mutex.Lock()
 		draining := d.draining
 		d.mutex.Unlock()
-		if draining && r.ProtoMajor == 1 {
+		if draining {
 			w.Header().Set("Connection", "close")
 		}
 		next.ServeHTTP(w, r)

@@ -3,6 +3,7 @@ package main
 import (
 	"bytes"
 	"context"
+	"errors"
 	"io"
 	"net"
 	"net/http"
@@ -149,6 +150,7 @@ func TestStopLosesNothing(t *testing.T) {
 			}
 		})
 	}
+	shared := overHTTP2()
 	for i := range callers {
 		run(func() bool {
 			solution, err := client.SolveEffect(context.Background(), &request)
@@ -164,13 +166,19 @@ func TestStopLosesNothing(t *testing.T) {
 			}
 			return true
 		})
-		// Half of the callers open a connection for each request, half keep
-		// theirs.
-		transport := &http.Transport{DisableKeepAlives: i%2 == 0}
+		// A third of the callers open a connection for each request, a third
+		// keep theirs, and a third share one over HTTP/2.
+		client, fresh := shared, false
+		if i%3 < 2 {
+			fresh = i%3 == 0
+			client = &http.Client{Transport: &http.Transport{DisableKeepAlives: fresh}}
+		}
 		run(func() bool {
-			response, err := (&http.Client{Transport: transport}).Post(p.httpURL+"/v1/effects:solve", "application/json", strings.NewReader(`{`+good+`}`))
+			response, err := client.Post(p.httpURL+"/v1/effects:solve", "application/json", strings.NewReader(`{`+good+`}`))
 			if err != nil {
-				if strings.Contains(err.Error(), "connection refused") || strings.Contains(err.Error(), "connection reset") {
+				// A connection may be reset while it still waits to be taken
+				// in, which is a refusal of a new one only.
+				if strings.Contains(err.Error(), "connection refused") || fresh && strings.Contains(err.Error(), "connection reset") {
 					refused.Add(1)
 				} else {
 					lost.Add(1)
@@ -219,6 +227,89 @@ func TestStopLosesNothing(t *testing.T) {
 	}
 	if lines := int64(strings.Count(log, "door=grpc")); lines != answeredGRPC.Load() {
 		t.Errorf("the server answered %d calls over gRPC, callers got %d", lines, answeredGRPC.Load())
+	}
+}
+
+// overHTTP2 is a client that sends all its requests over one connection.
+func overHTTP2() *http.Client {
+	protocols := new(http.Protocols)
+	protocols.SetUnencryptedHTTP2(true)
+	return &http.Client{Transport: &http.Transport{Protocols: protocols}}
+}
+
+// TestStopTurnsAwayBusyConnections keeps one request in flight over HTTP/2
+// while others follow on its connection: at a stop these must soon be turned
+// away, lest the stop wait for its deadline and cut the first one off.
+func TestStopTurnsAwayBusyConnections(t *testing.T) {
+	inside, release := make(chan struct{}), make(chan struct{})
+	d := newDrain()
+	protocols := new(http.Protocols)
+	protocols.SetUnencryptedHTTP2(true)
+	server := &http.Server{
+		ConnState: d.watch, Protocols: protocols, ReadHeaderTimeout: time.Minute,
+		Handler: d.telling(http.HandlerFunc(func(w http.ResponseWriter, r *http.Request) {
+			if r.URL.Path == "/long" {
+				close(inside)
+				<-release
+			}
+			_, _ = io.WriteString(w, "whole")
+		})),
+	}
+	listener, err := net.Listen("tcp", "127.0.0.1:0")
+	if err != nil {
+		t.Fatal(err)
+	}
+	served := make(chan error, 1)
+	go func() { served <- server.Serve(listener) }()
+	client, url := overHTTP2(), "http://"+listener.Addr().String()
+	get := func(path string) (string, error) {
+		response, err := client.Get(url + path)
+		if err != nil {
+			return "", err
+		}
+		defer response.Body.Close()
+		text, err := io.ReadAll(response.Body)
+		return string(text), err
+	}
+	long := make(chan string, 1)
+	go func() {
+		text, err := get("/long")
+		if err != nil {
+			text = err.Error()
+		}
+		long <- text
+	}()
+	<-inside
+	finished := make(chan struct{})
+	go func() {
+		defer close(finished)
+		d.finish(context.Background(), server, listener)
+	}()
+	patience := time.Now().Add(20 * time.Second)
+	for {
+		text, err := get("/short")
+		if err != nil {
+			if !strings.Contains(err.Error(), "connection refused") {
+				t.Errorf("turned away with %v, want a refusal at the door", err)
+			}
+			break
+		}
+		if text != "whole" {
+			t.Errorf("answered %q", text)
+		}
+		if time.Now().After(patience) {
+			t.Error("still taken in during the stop")
+			break
+		}
+		time.Sleep(time.Millisecond)
+	}
+	close(release)
+	if text := <-long; text != "whole" {
+		t.Errorf("the request in flight got %q", text)
+	}
+	<-finished
+	if err := <-served; err != nil && !errors.Is(err, net.ErrClosed) && !errors.Is(err, http.ErrServerClosed) {
+		t.Error(err)
 	}
 }
 
