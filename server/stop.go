@@ -74,11 +74,13 @@ func (d *drain) finish(ctx context.Context, server *http.Server, listener net.Li
 		quiet = 250 * time.Millisecond // for callers that keep their connection
 		pause = 10 * time.Millisecond
 	)
+	// It can only fail by being closed already. It closes before callers are
+	// told to go, or those that come again at once would queue at a door that
+	// shuts on them.
+	_ = listener.Close()
 	d.mutex.Lock()
 	d.draining = true
 	d.mutex.Unlock()
-	// It can only fail by being closed already.
-	_ = listener.Close()
 	least := time.Now().Add(quiet)
 	for ctx.Err() == nil && (d.busy() || time.Now().Before(least)) {
 		time.Sleep(pause)
