@@ -21,6 +21,7 @@ import (
 	"google.golang.org/grpc"
 	"google.golang.org/grpc/codes"
 	"google.golang.org/grpc/credentials/insecure"
+	"google.golang.org/grpc/metadata"
 	"google.golang.org/grpc/status"
 	"google.golang.org/protobuf/encoding/protojson"
 
@@ -310,6 +311,48 @@ func TestStopTurnsAwayBusyConnections(t *testing.T) {
 	<-finished
 	if err := <-served; err != nil && !errors.Is(err, net.ErrClosed) && !errors.Is(err, http.ErrServerClosed) {
 		t.Error(err)
+	}
+}
+
+// TestOneLineForEachCall holds the log to one line a call, and lets no caller
+// keep out of it by what it sends.
+func TestOneLineForEachCall(t *testing.T) {
+	p := startProcess(t)
+	connection, err := grpc.NewClient(p.grpcAddress, grpc.WithTransportCredentials(insecure.NewCredentials()))
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer connection.Close()
+	ctx := metadata.AppendToOutgoingContext(t.Context(), "x-request-id", "line-grpc", "x-calandria-door", "rest", "x-forwarded-for", "127.0.0.1")
+	if _, err := calandriav1.NewEngineServiceClient(connection).GetEngine(ctx, &calandriav1.GetEngineRequest{}); err != nil {
+		t.Error(err)
+	}
+	request, err := http.NewRequestWithContext(t.Context(), http.MethodGet, p.httpURL+"/v1/engine", http.NoBody)
+	if err != nil {
+		t.Fatal(err)
+	}
+	request.Header.Set("X-Request-Id", "line-rest")
+	response, err := http.DefaultClient.Do(request)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if err := response.Body.Close(); err != nil {
+		t.Error(err)
+	}
+	http.DefaultClient.CloseIdleConnections()
+	if err := p.Process.Signal(syscall.SIGTERM); err != nil {
+		t.Fatal(err)
+	}
+	if err := p.Wait(); err != nil {
+		t.Error(err)
+	}
+	for _, door := range []string{"grpc", "rest"} {
+		if n := strings.Count(p.log.String(), "door="+door+" id=line-"+door); n != 1 {
+			t.Errorf("%d lines for the call over %s, want 1:\n%s", n, door, p.log.String())
+		}
+		if n := strings.Count(p.log.String(), "line-"+door); n != 1 {
+			t.Errorf("the call over %s is named %d times, want once:\n%s", door, n, p.log.String())
+		}
 	}
 }
 

@@ -66,7 +66,7 @@ func New(channel grpc.ClientConnInterface, limits Limits, ready func() bool, log
 		runtime.WithOutgoingHeaderMatcher(func(string) (string, bool) { return "", false }),
 		runtime.WithOutgoingTrailerMatcher(func(string) (string, bool) { return "", false }),
 		runtime.WithMetadata(func(_ context.Context, r *http.Request) metadata.MD {
-			return metadata.Pairs(telemetry.IDHeader, telemetry.ID(r.Context()), telemetry.DoorHeader, "rest")
+			return metadata.Pairs(telemetry.IDHeader, telemetry.ID(r.Context()))
 		}),
 		runtime.WithDisablePathLengthFallback(),
 	)

@@ -10,6 +10,7 @@ import (
 	"runtime/debug"
 	"time"
 
+	"github.com/fullstorydev/grpchan/inprocgrpc"
 	"google.golang.org/grpc"
 	"google.golang.org/grpc/metadata"
 	"google.golang.org/grpc/peer"
@@ -20,10 +21,6 @@ import (
 
 // IDHeader carries a request's id, as gRPC metadata and as an HTTP header.
 const IDHeader = "x-request-id"
-
-// DoorHeader tells the interceptors that a call came through REST, which
-// writes a line of its own.
-const DoorHeader = "x-calandria-door"
 
 const longestID = 64
 
@@ -73,15 +70,16 @@ func ID(ctx context.Context) string {
 func Unary(log *slog.Logger) grpc.UnaryServerInterceptor {
 	return func(ctx context.Context, request any, info *grpc.UnaryServerInfo, handler grpc.UnaryHandler) (answer any, err error) {
 		start := time.Now()
-		id, rest := incoming(ctx)
+		id := incoming(ctx)
 		ctx = WithID(ctx, id)
 		defer func() {
 			if v := recover(); v != nil {
 				log.LogAttrs(ctx, slog.LevelError, "panic", slog.String("id", id), slog.String("method", info.FullMethod), slog.Any("value", v), slog.String("stack", string(debug.Stack())))
 				answer, err = nil, statuses.Internal(id).Err()
 			}
-			// The REST face writes a line of its own.
-			if !rest {
+			// The REST face, the one caller within the process, writes a line
+			// of its own. Metadata can not tell: any caller can send it.
+			if inprocgrpc.ClientContext(ctx) == nil {
 				line(ctx, log, id, info.FullMethod, err, time.Since(start))
 			}
 		}()
@@ -106,11 +104,11 @@ func line(ctx context.Context, log *slog.Logger, id, method string, err error, t
 	log.LogAttrs(ctx, slog.LevelInfo, "answered", attributes...)
 }
 
-func incoming(ctx context.Context) (id string, rest bool) {
+// incoming returns the id that a call brought, or a new one.
+func incoming(ctx context.Context) string {
 	md, _ := metadata.FromIncomingContext(ctx)
-	rest = len(md.Get(DoorHeader)) > 0
 	if given := md.Get(IDHeader); len(given) > 0 && ValidID(given[0]) {
-		return given[0], rest
+		return given[0]
 	}
-	return NewID(), rest
+	return NewID()
 }
