@@ -23,6 +23,7 @@ import (
 	"google.golang.org/grpc/reflection/grpc_reflection_v1"
 	"google.golang.org/grpc/status"
 	"google.golang.org/protobuf/encoding/protojson"
+	"google.golang.org/protobuf/encoding/protowire"
 	"google.golang.org/protobuf/proto"
 	"google.golang.org/protobuf/reflect/protoreflect"
 
@@ -322,6 +323,46 @@ func TestSameRefusalAtBothDoors(t *testing.T) {
 		response, text := s.ask(t, http.MethodPost, "/v1/effects:solve", c.body)
 		if response.StatusCode != statuses.HTTP(c.reason) || !strings.Contains(text, `"reason":"`+statuses.Word(c.reason)+`"`) {
 			t.Errorf("REST: %d %s, want %v", response.StatusCode, text, c.reason)
+		}
+	}
+}
+
+// TestRefusedShapesOverGRPC sends requests over a real socket that no caller
+// of this version should: too large, and with fields that do not exist.
+func TestRefusedShapesOverGRPC(t *testing.T) {
+	s := start(t)
+	client := calandriav1.NewTrainServiceClient(s.connection)
+	newer := func(m proto.Message) {
+		// Field 1000, a varint: what a newer proto might have.
+		m.ProtoReflect().SetUnknown(protowire.AppendVarint(protowire.AppendTag(nil, 1000, protowire.VarintType), 1))
+	}
+	var inside, within, large calandriav1.SolveEffectRequest
+	for _, m := range []*calandriav1.SolveEffectRequest{&inside, &within, &large} {
+		if err := protojson.Unmarshal([]byte(`{`+good+`}`), m); err != nil {
+			t.Fatal(err)
+		}
+	}
+	newer(&inside)
+	within.CustomLiquor.Heat = &calandriav1.CustomLiquor_EnthalpyTable{EnthalpyTable: &calandriav1.EnthalpyTable{
+		Rows: []*calandriav1.EnthalpyRow{{SolidsFraction: proto.Float64(0.1)}, {SolidsFraction: proto.Float64(0.2)}},
+	}}
+	newer(within.GetCustomLiquor().GetEnthalpyTable().GetRows()[1])
+	large.CustomLiquor.Source = strings.Repeat("x", 2<<20)
+	for _, c := range []struct {
+		name    string
+		request *calandriav1.SolveEffectRequest
+		reason  calandriav1.Reason
+		field   string
+	}{
+		{"unknown field", &inside, calandriav1.Reason_REASON_FIELD_INVALID, ""},
+		{"unknown field in a list", &within, calandriav1.Reason_REASON_FIELD_INVALID, "custom_liquor.enthalpy_table.rows[1]"},
+		{"too large", &large, calandriav1.Reason_REASON_TOO_LARGE, ""},
+	} {
+		answer, err := client.SolveEffect(t.Context(), c.request)
+		refusal := status.Convert(err)
+		violations := statuses.Violations(refusal)
+		if answer != nil || refusal.Code() != codes.InvalidArgument || statuses.Reason(refusal) != c.reason || len(violations) != 1 || violations[0].GetField() != c.field {
+			t.Errorf("%s: %v %v", c.name, answer, err)
 		}
 	}
 }

@@ -31,6 +31,9 @@ const (
 	jsonDepth     = 16
 	targetBytes   = 8192
 	answerSeconds = 30
+	// transportTimes is how many times the largest request the transport takes
+	// in, so that the chain can say what is wrong with it.
+	transportTimes = 4
 )
 
 // doors are both doors of a service that is up.
@@ -48,7 +51,7 @@ func serve(ctx context.Context, s settings.Settings, log *slog.Logger, checks []
 	if failed := vetting.Failures(checks); len(failed) > 0 {
 		return fmt.Errorf("%w:\n%s", errUnvetted, strings.Join(failed, "\n"))
 	}
-	chain, err := rpc.Chain(log, answerSeconds*time.Second)
+	chain, err := rpc.Chain(log, answerSeconds*time.Second, s.RequestBytes)
 	if err != nil {
 		return err
 	}
@@ -58,7 +61,9 @@ func serve(ctx context.Context, s settings.Settings, log *slog.Logger, checks []
 
 	grpcServer := grpc.NewServer(
 		grpc.ChainUnaryInterceptor(chain...),
-		grpc.MaxRecvMsgSize(s.RequestBytes),
+		// The transport refuses in its own words, with a code that invites a
+		// retry; up to this bound the chain refuses first, in ours.
+		grpc.MaxRecvMsgSize(transportTimes*s.RequestBytes),
 		grpc.KeepaliveParams(keepalive.ServerParameters{MaxConnectionIdle: 15 * time.Minute, MaxConnectionAge: 30 * time.Minute, MaxConnectionAgeGrace: time.Minute}),
 		grpc.KeepaliveEnforcementPolicy(keepalive.EnforcementPolicy{MinTime: 10 * time.Second, PermitWithoutStream: true}),
 	)

@@ -186,7 +186,7 @@ func (g *Gateway) guarded(a *answer, r *http.Request) {
 func (g *Gateway) serve(a *answer, r *http.Request, o options) {
 	const targetTooLong = http.StatusRequestURITooLong
 	if len(r.RequestURI) > g.limits.TargetBytes {
-		g.refuse(a, r, o, tooLarge("path and query", len(r.RequestURI), g.limits.TargetBytes), targetTooLong)
+		g.refuse(a, r, o, statuses.TooLarge("path and query", len(r.RequestURI), g.limits.TargetBytes), targetTooLong)
 		return
 	}
 	method := r.Method
@@ -271,7 +271,7 @@ func (g *Gateway) post(a *answer, r *http.Request, found *route) {
 		return
 	}
 	if r.ContentLength > int64(g.limits.RequestBytes) {
-		g.refuse(a, r, options{}, tooLarge("body", int(min(r.ContentLength, 1<<31-1)), g.limits.RequestBytes), 0)
+		g.refuse(a, r, options{}, statuses.TooLarge("body", int(min(r.ContentLength, 1<<31-1)), g.limits.RequestBytes), 0)
 		return
 	}
 	body, err := io.ReadAll(io.LimitReader(r.Body, int64(g.limits.RequestBytes)+1))
@@ -280,7 +280,7 @@ func (g *Gateway) post(a *answer, r *http.Request, found *route) {
 		return
 	}
 	if len(body) > g.limits.RequestBytes {
-		g.refuse(a, r, options{}, tooLarge("body", len(body), g.limits.RequestBytes), 0)
+		g.refuse(a, r, options{}, statuses.TooLarge("body", len(body), g.limits.RequestBytes), 0)
 		return
 	}
 	var violations []*calandriav1.Violation

@@ -92,7 +92,7 @@ func TestEveryReasonHasItsWords(t *testing.T) {
 // wholeFace is a gateway over the real services behind the real interceptors.
 func wholeFace(t testing.TB) *Gateway {
 	t.Helper()
-	chain, err := rpc.Chain(slog.New(slog.DiscardHandler), time.Minute)
+	chain, err := rpc.Chain(slog.New(slog.DiscardHandler), time.Minute, 1<<20)
 	if err != nil {
 		t.Fatal(err)
 	}

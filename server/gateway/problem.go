@@ -5,7 +5,6 @@ import (
 	_ "embed" // the API description
 	"encoding/hex"
 	"encoding/json"
-	"fmt"
 	"net/http"
 	"strings"
 
@@ -113,11 +112,4 @@ func (g *Gateway) settle(a *answer, r *http.Request) {
 			a.status = http.StatusNotModified
 		}
 	}
-}
-
-func tooLarge(what string, sent, limit int) *status.Status {
-	return statuses.New(calandriav1.Reason_REASON_TOO_LARGE,
-		fmt.Sprintf("The %s is too large: %d bytes or more were sent, %d are read. Do not send it again; make it smaller.", what, sent, limit),
-		map[string]string{"sent": fmt.Sprint(sent), "limit": fmt.Sprint(limit)},
-		&calandriav1.Violation{Value: fmt.Sprintf("%d bytes", sent), Limit: fmt.Sprintf("%d bytes", limit), Detail: "The " + what + " is too large."})
 }

@@ -19,8 +19,9 @@ import (
 
 // Chain returns the interceptors that every call passes, whichever door it
 // came through, outermost first: id, log line and recovery, mapping of faults,
-// time limit, the protos' own rules, and a look at the answer.
-func Chain(log *slog.Logger, longest time.Duration) ([]grpc.UnaryServerInterceptor, error) {
+// time limit, size and unknown fields, the protos' own rules, and a look at
+// the answer.
+func Chain(log *slog.Logger, longest time.Duration, requestBytes int) ([]grpc.UnaryServerInterceptor, error) {
 	validator, err := protovalidate.New(
 		protovalidate.WithMessages(&calandriav1.GetSteamStateRequest{}, &calandriav1.GetSaturationRequest{}, &calandriav1.SolveEffectRequest{}),
 	)
@@ -28,7 +29,7 @@ func Chain(log *slog.Logger, longest time.Duration) ([]grpc.UnaryServerIntercept
 		return nil, fmt.Errorf("rules of the protos: %w", err)
 	}
 	return []grpc.UnaryServerInterceptor{
-		telemetry.Unary(log), mapFaults(log), limitTime(longest), checkRules(validator), checkAnswer,
+		telemetry.Unary(log), mapFaults(log), limitTime(longest), checkShape(requestBytes), checkRules(validator), checkAnswer,
 	}, nil
 }
 
@@ -57,6 +58,60 @@ func limitTime(longest time.Duration) grpc.UnaryServerInterceptor {
 		}
 		return handler(ctx, request)
 	}
+}
+
+// checkShape refuses what a request may not be, whatever it says: larger than
+// the limit, or with fields that this service does not know. A newer caller's
+// field would otherwise be dropped, and the answer be to another question.
+func checkShape(requestBytes int) grpc.UnaryServerInterceptor {
+	return func(ctx context.Context, request any, _ *grpc.UnaryServerInfo, handler grpc.UnaryHandler) (any, error) {
+		if m, ok := request.(proto.Message); ok {
+			if size := proto.Size(m); size > requestBytes {
+				return nil, statuses.TooLarge("request", size, requestBytes).Err()
+			}
+			if path, unknown := unknownField(m.ProtoReflect()); unknown {
+				subject := path
+				if subject == "" {
+					subject = "The request"
+				}
+				return nil, statuses.Invalid(&calandriav1.Violation{
+					Field: path, Value: "a field of unknown number", Limit: "the fields of this version of the API",
+					Detail: subject + " holds a field that this service does not know; call a newer service, or leave the field out.",
+				}).Err()
+			}
+		}
+		return handler(ctx, request)
+	}
+}
+
+// unknownField finds a message with fields that the protos here do not have,
+// and returns its path.
+func unknownField(m protoreflect.Message) (path string, found bool) {
+	if len(m.GetUnknown()) > 0 {
+		return "", true
+	}
+	m.Range(func(d protoreflect.FieldDescriptor, v protoreflect.Value) bool {
+		if d.Kind() != protoreflect.MessageKind {
+			return true
+		}
+		look := func(name string, inner protoreflect.Message) {
+			if below, is := unknownField(inner); is && !found {
+				path, found = name, true
+				if below != "" {
+					path += "." + below
+				}
+			}
+		}
+		if d.IsList() {
+			for i := range v.List().Len() {
+				look(fmt.Sprintf("%s[%d]", d.Name(), i), v.List().Get(i).Message())
+			}
+		} else {
+			look(string(d.Name()), v.Message())
+		}
+		return !found
+	})
+	return path, found
 }
 
 func checkRules(validator protovalidate.Validator) grpc.UnaryServerInterceptor {

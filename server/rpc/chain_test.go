@@ -23,7 +23,7 @@ import (
 // through sends a request to a handler through the whole chain.
 func through(t *testing.T, log *strings.Builder, request proto.Message, handler grpc.UnaryHandler) (any, error) {
 	t.Helper()
-	chain, err := Chain(slog.New(slog.NewTextHandler(log, nil)), time.Minute)
+	chain, err := Chain(slog.New(slog.NewTextHandler(log, nil)), time.Minute, 1<<20)
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -105,7 +105,7 @@ func TestRulesApply(t *testing.T) {
 }
 
 func TestTooLateFromTheStart(t *testing.T) {
-	chain, err := Chain(slog.New(slog.DiscardHandler), 0)
+	chain, err := Chain(slog.New(slog.DiscardHandler), 0, 1<<20)
 	if err != nil {
 		t.Fatal(err)
 	}

@@ -54,7 +54,7 @@ func Read(arguments []string, environment func(string) string, out io.Writer) (S
 	flags := flag.NewFlagSet("server", flag.ContinueOnError)
 	flags.SetOutput(out)
 	flags.Usage = func() {
-		fmt.Fprintln(out, "usage: server [flags]     serve\n       server healthcheck  ask a running server whether it is ready (exit status 0 or 1)\n\nflags:")
+		fmt.Fprintln(out, "usage: server [flags]     serve\n       server healthcheck  ask the server at CALANDRIA_HTTP_LISTEN whether it is ready (exit status 0 or 1)\n\nflags:")
 		for _, setting := range All() {
 			fmt.Fprintf(out, "  %-16s %s (default %s", setting.Flag, setting.Meaning, setting.Default)
 			if setting.Environment != "" {

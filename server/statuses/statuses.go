@@ -126,6 +126,14 @@ func Invalid(violations ...*calandriav1.Violation) *status.Status {
 	return New(calandriav1.Reason_REASON_FIELD_INVALID, message, nil, violations...)
 }
 
+// TooLarge makes the status of a request over the limit in force, in bytes.
+func TooLarge(what string, sent, limit int) *status.Status {
+	return New(calandriav1.Reason_REASON_TOO_LARGE,
+		fmt.Sprintf("The %s is too large: %d bytes or more were sent, %d are read. Do not send it again; make it smaller.", what, sent, limit),
+		map[string]string{"sent": strconv.Itoa(sent), "limit": strconv.Itoa(limit)},
+		&calandriav1.Violation{Value: fmt.Sprintf("%d bytes", sent), Limit: fmt.Sprintf("%d bytes", limit), Detail: "The " + what + " is too large."})
+}
+
 // Internal makes the status of a fault of the service itself. The caller
 // learns the id, under which the log holds the rest.
 func Internal(id string) *status.Status {
