@@ -289,8 +289,10 @@ func TestCachingHeadAndOptions(t *testing.T) {
 		t.Errorf("escaped colon: %d %s", escaped.StatusCode, body)
 	}
 	for _, page := range []string{"/", "/healthz", "/readyz"} {
-		if response, body := s.ask(t, "GET", page, ""); response.StatusCode != 200 || body == "" {
-			t.Errorf("%s: %d %q", page, response.StatusCode, body)
+		response, body := s.ask(t, "GET", page, "")
+		kept := response.Header.Get("Etag") != ""
+		if response.StatusCode != 200 || body == "" || kept != (page == "/") || kept == (response.Header.Get("Cache-Control") == "no-store") {
+			t.Errorf("%s: %d %q %v", page, response.StatusCode, body, response.Header)
 		}
 	}
 }

@@ -46,9 +46,9 @@ type enthalpyTable struct {
 	rows   []numeric.Curve
 }
 
-// tableSlack is by how much a table may be overreached: a hundredth of a
-// kelvin around a single point, which stands for a temperature that was
-// itself read off a chart.
+// By how much a table may be overreached: a hundredth of a kelvin around a
+// single point, which stands for a temperature that was itself read off a
+// chart.
 const (
 	pointSlack       = 0.01 // K
 	temperatureSlack = 5.0  // K, beyond a row of several points

@@ -37,7 +37,7 @@ func NewCurve(x, y []float64) Curve {
 	return Curve{x: x, y: y, slope: slope}
 }
 
-// First and Last are the ends of the data.
+// First is the lower end of the data.
 func (c Curve) First() float64 { return c.x[0] }
 
 // Last is the upper end of the data.

@@ -15,7 +15,7 @@ const closes = 1e-9
 
 // answer completes a state to an answer and refuses it if a property was used
 // where it does not hold or a balance does not close.
-func (q *question) answer(v *state, all []state) (*Answer, error) {
+func (q *question) answer(v *state) (*Answer, error) {
 	a := &Answer{
 		DrivingForce:          v[drivingForce],
 		Rise:                  v[BoilingTemperature] - v[VapourSaturationTemperature],
@@ -37,7 +37,7 @@ func (q *question) answer(v *state, all []state) (*Answer, error) {
 	if err := q.closure(v, a); err != nil {
 		return nil, err
 	}
-	q.remark(v, a, all)
+	q.remark(v, a)
 	a.Models = append(steam.Models(), q.liquor.Models()...)
 	for i := range a.Models {
 		for _, remark := range a.Advisories {
@@ -139,7 +139,7 @@ func liveSteam(p quantity.Pressure, superheat, dryness float64) (float64, error)
 }
 
 // remark adds what a person should know beside the numbers.
-func (q *question) remark(v *state, a *Answer, all []state) {
+func (q *question) remark(v *state, a *Answer) {
 	const smallForce = 2.0 // K
 	if v[FeedTemperature] > v[BoilingTemperature] {
 		a.Advisories = append(a.Advisories, evidence.Advisory{
@@ -154,14 +154,13 @@ func (q *question) remark(v *state, a *Answer, all []state) {
 			Limit:   "2 K",
 		})
 	}
-	for i := range all {
-		other := &all[i]
-		if math.Abs(other[SolidsOut]-v[SolidsOut]) > 1e-6 || math.Abs(other[VapourFlow]-v[VapourFlow]) > 1e-6*v[VapourFlow] {
-			a.Advisories = append(a.Advisories, evidence.Advisory{
-				Code: evidence.SecondAnswer, Warning: true, Field: ProductSolids.Path(),
-				Message: fmt.Sprintf("A second physical answer exists, with product solids of %.6g kg/kg and %.6g kg/h evaporated.", other[SolidsOut], quantity.MassFlow(other[VapourFlow]).KilogramsPerHour()),
-			})
-			break
-		}
-	}
+}
+
+// nameOther adds that another physical answer exists.
+func (a *Answer) nameOther(other *Answer) {
+	a.Advisories = append(a.Advisories, evidence.Advisory{
+		Code: evidence.SecondAnswer, Warning: true, Field: ProductSolids.Path(),
+		Message: fmt.Sprintf("Another physical answer exists, with product solids of %.6g kg/kg, %.6g kg/h evaporated and %.6g kg/h of live steam.",
+			other.Value[SolidsOut], quantity.MassFlow(other.Value[VapourFlow]).KilogramsPerHour(), quantity.MassFlow(other.Value[SteamFlow]).KilogramsPerHour()),
+	})
 }

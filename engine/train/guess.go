@@ -9,7 +9,8 @@ import (
 
 // strengths are where between the feed's solids and dry solids the attempts
 // start to look for the product: first from both ends of what is possible.
-// forces are the driving forces in K that they start from, slower.
+// forces are the driving forces in K that they start from, one for each round
+// of strengths.
 var (
 	strengths = [...]float64{0.05, 0.9, 0.5, 0.2}
 	forces    = [...]float64{20, 5, 50, 100}
@@ -39,11 +40,10 @@ func (s *search) guess(b *block, attempt int, v *state) {
 		}
 	}
 	const (
-		latent     = 2.25e6  // J/kg
-		usualHeat  = 3.8e3   // J/(kg K)
-		usualU     = 1.5e3   // W/(m2 K)
-		usualSize  = 1.0     // kg/s
-		hotDryness = 2.675e6 // J/kg, vapour near 100 degC
+		latent    = 2.25e6 // J/kg
+		usualHeat = 3.8e3  // J/(kg K)
+		usualU    = 1.5e3  // W/(m2 K)
+		usualSize = 1.0    // kg/s
 	)
 
 	// Solids: those of feed and product are tied by their flows.

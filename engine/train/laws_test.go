@@ -7,6 +7,7 @@ import (
 	"slices"
 	"testing"
 
+	"calandria.example/calandria/engine/evidence"
 	"calandria.example/calandria/engine/fault"
 	"calandria.example/calandria/engine/liquor"
 	"calandria.example/calandria/engine/quantity"
@@ -275,6 +276,62 @@ func TestPointsServeAtTheirOwnPlaceOnly(t *testing.T) {
 	var f *fault.Range
 	if !errors.As(err, &f) {
 		t.Errorf("5 K beside the point: %v", err)
+	}
+}
+
+// TestPressuresOffTheLine: below the triple point and above 350 degC there is
+// no boiling to model, and that is the reason given.
+func TestPressuresOffTheLine(t *testing.T) {
+	l := sugar(t)
+	for _, c := range []Given{{EffectPressure, 550}, {EffectPressure, 17e6}, {SteamPressure, 600}, {SteamPressure, 16.6e6}} {
+		_, err := Solve(design(l, c))
+		var f *fault.Range
+		if !errors.As(err, &f) || f.Quantity != c.Number.Path() {
+			t.Errorf("%s %g Pa: %v", c.Number.Path(), c.Value, err)
+		}
+	}
+	if _, err := Solve(design(l, Given{EffectPressure, 620})); err != nil {
+		t.Errorf("just above the triple point: %v", err)
+	}
+}
+
+// TestSeveralAnswers asks for solids by a rise that takes the same value three
+// times: 20 w - 50 w^2 + 40 w^3 is 2.55 K between its turning points at w of
+// 1/3 (2.593 K) and 1/2 (2.5 K), by hand.
+func TestSeveralAnswers(t *testing.T) {
+	rise := []float64{0, 20, -50, 40}
+	ask := func(specificHeat []float64) (*Answer, error) {
+		l := newLiquor(t, liquor.Custom{RisePolynomial: rise, SpecificHeat: specificHeat})
+		return Solve(Plant{Liquor: l, Given: []Given{
+			{FeedFlow, 2}, {FeedSolids, 0.05}, {FeedTemperature, 330}, {VapourSaturationTemperature, 340}, {BoilingTemperature, 342.55}, {SteamPressure, 180e3}, {Coefficient, 1500},
+		}})
+	}
+	others := func(a *Answer) (n int) {
+		for _, remark := range a.Advisories {
+			if remark.Code == evidence.SecondAnswer {
+				n++
+			}
+		}
+		return n
+	}
+	a, err := ask([]float64{4000})
+	if err != nil {
+		t.Fatal(err)
+	}
+	if w := a.Value[SolidsOut]; !(w > 0.05 && w < 1./3) || others(a) != 2 {
+		t.Errorf("solids %g with %d others, want the lowest root, below 1/3, and two others", w, others(a))
+	}
+	// A specific heat that is negative around the lowest root only, about
+	// 0.28: no answer there, but the next one stands.
+	lowest := a.Value[SolidsOut]
+	middle := lowest + 0.01
+	bowl := []float64{middle*middle*1e5 - 100, -2e5 * middle, 1e5} // 1e5 (w - middle)^2 - 100
+	a, err = ask(bowl)
+	if err != nil {
+		t.Fatalf("the next root was not tried: %v", err)
+	}
+	if w := a.Value[SolidsOut]; !(w > 1./3 && w < 0.5) || others(a) != 1 {
+		t.Errorf("solids %g with %d others, want the middle root and one other", w, others(a))
 	}
 }
 

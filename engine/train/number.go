@@ -121,7 +121,7 @@ func defaultOf(n Number) (float64, bool) {
 	return 0, false
 }
 
-// Coldest and hottest are the temperatures in K between which the equations
+// coldest and hottest are the temperatures in K between which the equations
 // of a plant are solved: the triple point of water, and the upper end of
 // IAPWS R7-97 regions 1 and 2 on the saturation line.
 const (

@@ -9,6 +9,7 @@ import (
 	"calandria.example/calandria/engine/fault"
 	"calandria.example/calandria/engine/liquor"
 	"calandria.example/calandria/engine/quantity"
+	"calandria.example/calandria/engine/steam"
 )
 
 // Given is a number that a question fixes, in SI units.
@@ -70,16 +71,13 @@ func newQuestion(p Plant) (*question, error) {
 		problems = append(problems, &fault.Invalid{Field: n.Path(), Value: value, Limit: limit, WayOut: wayOut})
 	}
 	for _, g := range p.Given {
-		low, high := bounds(g.Number)
-		if details[g.Number].kind == temperature {
-			low = quantity.Zero
-		}
+		low, high := doorBounds(g.Number)
 		shown := strconv.FormatFloat(g.Value, 'g', -1, 64) + " " + details[g.Number].unit
 		switch {
 		case math.IsNaN(g.Value) || math.IsInf(g.Value, 0):
 			complain(g.Number, shown, "a finite number", "leave it out to have it solved for")
 		case !(g.Value >= low && g.Value <= high):
-			problems = append(problems, &fault.Range{Quantity: g.Number.Path(), Unit: details[g.Number].unit, Source: "physical limits of the effect model", Value: g.Value, Min: low, Max: high})
+			problems = append(problems, &fault.Range{Quantity: g.Number.Path(), Unit: details[g.Number].unit, Source: "the effect model", Value: g.Value, Min: low, Max: high})
 		case q.fixed[g.Number]:
 			complain(g.Number, "given twice", "once", "drop one of the two")
 		}
@@ -107,6 +105,23 @@ func newQuestion(p Plant) (*question, error) {
 		q.fixed[n], q.byDefault[n], q.value[n] = true, true, value
 	}
 	return q, nil
+}
+
+// doorBounds are what a question may fix a number to: the bounds of the
+// solver, but temperatures from 0 degC on, and pressures exactly as far as the
+// saturation line goes between the temperatures of the model.
+func doorBounds(n Number) (low, high float64) {
+	low, high = bounds(n)
+	switch details[n].kind {
+	case temperature:
+		low = quantity.Zero
+	case pressure:
+		// Both temperatures lie on the line: there is no error.
+		bottom, _ := steam.SaturationPressure(coldest)
+		top, _ := steam.SaturationPressure(hottest)
+		low, high = float64(bottom), float64(top)
+	}
+	return low, high
 }
 
 func contains(list []Number, n Number) bool {

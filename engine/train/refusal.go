@@ -38,25 +38,40 @@ func (s *search) refusal() error {
 	return &fault.NotConverged{Iterations: s.iterations + free.iterations, Residual: s.residual, Where: relationNames[s.where]}
 }
 
-// beyondItsEnds looks at the two ends of what an effect can do with its feed:
-// no evaporation at all, and all water boiled off. If even there the plant
-// would use more, or less, of something than is given, that is the reason.
+// beyondItsEnds looks at all that an effect can do with its feed, from no
+// evaporation at all to all water boiled off. If the plant would use more, or
+// less, of something than is given all the way, that is the reason.
 func (q *question) beyondItsEnds() error {
 	if !q.fixed[FeedSolids] || q.fixed[SolidsOut] || q.fixed[ProductSolids] || q.value[FeedSolids] <= 0 {
 		return nil
 	}
+	const (
+		places = 12
+		short  = 1e-6 // of either end
+	)
 	for _, n := range [...]Number{Area, SteamFlow, Duty, VapourFlow, Evaporation} {
 		if !q.fixed[n] {
 			continue
 		}
 		given := q.value[n]
-		if most, ok := q.atSolids(1-1e-6, n); ok && most < given {
+		least, most := math.Inf(1), math.Inf(-1)
+		first, last := false, false
+		for i := range places {
+			f := short + (1-2*short)*float64(i)/(places-1)
+			use, ok := q.atSolids(q.value[FeedSolids]+(1-q.value[FeedSolids])*f, n)
+			if !ok {
+				continue
+			}
+			least, most = math.Min(least, use), math.Max(most, use)
+			first, last = first || i == 0, last || i == places-1
+		}
+		switch {
+		case last && most < given:
 			return &fault.Infeasible{
 				Effect: "effect", Cause: fault.OutOfBounds, Field: n.Path(), Amount: given - most, Unit: details[n].unit,
-				Detail: n.Path() + " is more than the feed can use: less would boil off all of its water.",
+				Detail: n.Path() + " is more than the feed can use, up to boiling off all of its water.",
 			}
-		}
-		if least, ok := q.atSolids(q.value[FeedSolids]*(1+1e-6), n); ok && least > given {
+		case first && least > given:
 			return &fault.Infeasible{
 				Effect: "effect", Cause: fault.NegativeEvaporation, Field: n.Path(), Amount: least - given, Unit: details[n].unit,
 				Detail: n.Path() + " does not even bring the feed to its boiling point.",

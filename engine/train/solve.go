@@ -1,7 +1,9 @@
 package train
 
 import (
+	"cmp"
 	"math"
+	"slices"
 
 	"calandria.example/calandria/engine/fault"
 	"calandria.example/calandria/engine/numeric"
@@ -35,13 +37,39 @@ func Solve(p Plant) (*Answer, error) {
 	if len(s.found) == 0 {
 		return nil, s.refusal()
 	}
-	best := 0
-	for i := range s.found {
-		if s.found[i][SolidsOut] < s.found[best][SolidsOut] {
-			best = i
+	return q.choose(s.found)
+}
+
+// choose completes the states to answers and returns the one with the lowest
+// product solids, then the lowest steam flow; the others are named in its
+// advisories. A state at which the liquor's figures do not hold is no answer;
+// if none is left, the first one's reason is returned.
+func (q *question) choose(found []state) (*Answer, error) {
+	const level = 1e-9 // kg/kg, below which solids are the same
+	slices.SortStableFunc(found, func(a, b state) int {
+		if math.Abs(a[SolidsOut]-b[SolidsOut]) > level {
+			return cmp.Compare(a[SolidsOut], b[SolidsOut])
+		}
+		return cmp.Compare(a[SteamFlow], b[SteamFlow])
+	})
+	var chosen *Answer
+	var refused error
+	for i := range found {
+		a, err := q.answer(&found[i])
+		switch {
+		case err != nil && refused == nil:
+			refused = err
+		case err != nil:
+		case chosen == nil:
+			chosen = a
+		default:
+			chosen.nameOther(a)
 		}
 	}
-	return q.answer(&s.found[best], s.found)
+	if chosen == nil {
+		return nil, refused
+	}
+	return chosen, nil
 }
 
 // search walks the blocks of a question. Where a block has two roots both are

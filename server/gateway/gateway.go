@@ -51,6 +51,7 @@ type Gateway struct {
 type page struct {
 	contentType string
 	body        []byte
+	fleeting    bool
 }
 
 // New puts a REST face before channel. ready tells whether the service takes
@@ -81,8 +82,10 @@ func New(channel grpc.ClientConnInterface, limits Limits, ready func() bool, log
 		}
 	}
 	g.pages = map[string]page{
-		"/":             {"text/plain; charset=utf-8", index(g.routes)},
-		"/openapi.json": {"application/json; charset=utf-8", openAPI},
+		"/":             {"text/plain; charset=utf-8", index(g.routes), false},
+		"/openapi.json": {"application/json; charset=utf-8", openAPI, false},
+		"/healthz":      {"text/plain; charset=utf-8", []byte("ok\n"), true},
+		"/readyz":       {"text/plain; charset=utf-8", []byte("ok\n"), true},
 	}
 	return g, nil
 }
@@ -101,10 +104,11 @@ func index(routes []route) []byte {
 // answer collects what a request gets, so that errors, ETag and pick can be
 // settled before the first byte leaves.
 type answer struct {
-	header http.Header
-	status int
-	body   bytes.Buffer
-	reason string // word of the reason of a failure, for the log
+	header   http.Header
+	status   int
+	body     bytes.Buffer
+	reason   string // word of the reason of a failure, for the log
+	fleeting bool   // true of this moment only: not to be kept
 }
 
 func (a *answer) Header() http.Header { return a.header }
@@ -194,7 +198,7 @@ func (g *Gateway) serve(a *answer, r *http.Request, o options) {
 		method = http.MethodGet
 	}
 	found, allowed := find(g.routes, method, r.URL.Path)
-	fixed, isPage := g.page(r.URL.Path)
+	fixed, isPage := g.pages[r.URL.Path]
 	if isPage {
 		allowed = []string{http.MethodGet, http.MethodHead, http.MethodOptions}
 	}
@@ -217,6 +221,7 @@ func (g *Gateway) serve(a *answer, r *http.Request, o options) {
 			return
 		}
 		a.header.Set("Content-Type", fixed.contentType)
+		a.fleeting = fixed.fleeting
 		a.body.Write(fixed.body)
 		a.WriteHeader(http.StatusOK)
 	case found == nil:
@@ -227,14 +232,6 @@ func (g *Gateway) serve(a *answer, r *http.Request, o options) {
 	default:
 		g.post(a, r, found)
 	}
-}
-
-func (g *Gateway) page(path string) (page, bool) {
-	if path == "/healthz" || path == "/readyz" {
-		return page{"text/plain; charset=utf-8", []byte("ok\n")}, true
-	}
-	p, ok := g.pages[path]
-	return p, ok
 }
 
 func (g *Gateway) get(a *answer, r *http.Request, found *route, o options) {

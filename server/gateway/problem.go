@@ -97,7 +97,7 @@ func (g *Gateway) refuse(a *answer, r *http.Request, o options, s *status.Status
 // settle gives a good answer its ETag, and lets a caller that has it already
 // keep it.
 func (g *Gateway) settle(a *answer, r *http.Request) {
-	if a.status != http.StatusOK || a.reason != "" || r.Method != http.MethodGet && r.Method != http.MethodHead || strings.HasSuffix(r.URL.Path, "z") {
+	if a.status != http.StatusOK || a.reason != "" || a.fleeting || r.Method != http.MethodGet && r.Method != http.MethodHead {
 		a.header.Set("Cache-Control", "no-store")
 		return
 	}

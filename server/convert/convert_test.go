@@ -1,0 +1,96 @@
+package convert
+
+import (
+	"math"
+	"strings"
+	"testing"
+
+	"google.golang.org/protobuf/reflect/protoreflect"
+
+	"calandria.example/calandria/engine/train"
+	calandriav1 "calandria.example/calandria/proto/calandria/v1"
+)
+
+// TestUnits holds each suffix to its unit's definition (SI brochure, 9th ed.).
+func TestUnits(t *testing.T) {
+	for _, c := range []struct {
+		field         string
+		practical, si float64
+	}{
+		{"flow_kg_per_h", 3600, 1}, {"pressure_kpa_abs", 101.325, 101325}, {"temperature_c", 100, 373.15}, {"superheat_k", 5, 5},
+		{"duty_kw", 2, 2000}, {"area_m2", 7, 7}, {"coefficient_w_per_m2_k", 1500, 1500}, {"gas_side_resistance_m2_k_per_w", 1e-4, 1e-4},
+		{"enthalpy_kj_per_kg", 419, 419e3}, {"entropy_kj_per_kg_k", 4.2, 4200}, {"solids_fraction", 0.3, 0.3}, {"solids_fraction_out", 0.3, 0.3},
+		{"entrainment_kg_per_kg", 0.01, 0.01}, {"economy", 0.9, 0.9},
+	} {
+		if got := toSI(c.field, c.practical); math.Abs(got-c.si) > 1e-12*math.Abs(c.si) {
+			t.Errorf("%s: %g is %g in SI, want %g", c.field, c.practical, got, c.si)
+		}
+		if got := FromSI(c.field, c.si); math.Abs(got-c.practical) > 1e-12*math.Abs(c.practical) {
+			t.Errorf("%s: %g in SI is %g, want %g", c.field, c.si, got, c.practical)
+		}
+	}
+}
+
+// TestEveryNumberOfARequestArrives sets every number that a request can hold
+// to a value of its own, and expects each at the number of the same path: none
+// lost, none in another's place.
+func TestEveryNumberOfARequestArrives(t *testing.T) {
+	zero := 0.0
+	request := &calandriav1.SolveEffectRequest{
+		CustomLiquor: &calandriav1.CustomLiquor{
+			Rise: &calandriav1.CustomLiquor_RiseK{RiseK: zero}, Heat: &calandriav1.CustomLiquor_SpecificHeatKjPerKgK{SpecificHeatKjPerKgK: 4},
+		},
+	}
+	want := map[string]float64{}
+	var fill func(m protoreflect.Message, prefix string)
+	fill = func(m protoreflect.Message, prefix string) {
+		fields := m.Descriptor().Fields()
+		for i := range fields.Len() {
+			f := fields.Get(i)
+			switch path := prefix + string(f.Name()); {
+			case f.Kind() == protoreflect.DoubleKind:
+				value := float64(len(want) + 1)
+				want[path] = value
+				m.Set(f, protoreflect.ValueOfFloat64(value))
+			case f.Kind() == protoreflect.MessageKind && path != "custom_liquor":
+				fill(m.Mutable(f).Message(), path+".")
+			}
+		}
+	}
+	fill(request.ProtoReflect(), "")
+	plant, err := EffectRequest(request)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if len(plant.Given) != len(want) {
+		t.Errorf("%d numbers arrived of %d", len(plant.Given), len(want))
+	}
+	for _, g := range plant.Given {
+		if got := FromSI(g.Number.Path(), g.Value); math.Abs(got-want[g.Number.Path()]) > 1e-9 {
+			t.Errorf("%s arrived as %g, was %g", g.Number.Path(), got, want[g.Number.Path()])
+		}
+	}
+}
+
+// TestEveryNumberOfAnAnswerLeaves gives every number of an answer a value of
+// its own, and expects each at the field of the same path.
+func TestEveryNumberOfAnAnswerLeaves(t *testing.T) {
+	var a train.Answer
+	for n := range train.Number(len(a.Value)) {
+		a.Value[n] = toSI(n.Path(), float64(n+1))
+	}
+	solution := EffectSolution(&a).ProtoReflect()
+	for n := range train.Number(len(a.Value)) {
+		m := solution
+		names := strings.Split(n.Path(), ".")
+		for _, name := range names[:len(names)-1] {
+			m = m.Get(m.Descriptor().Fields().ByName(protoreflect.Name(name))).Message()
+		}
+		field := m.Descriptor().Fields().ByName(protoreflect.Name(names[len(names)-1]))
+		if field == nil {
+			t.Errorf("no field %s", n.Path())
+		} else if got := m.Get(field).Float(); math.Abs(got-float64(n+1)) > 1e-9 {
+			t.Errorf("%s leaves as %g, was %d", n.Path(), got, n+1)
+		}
+	}
+}
