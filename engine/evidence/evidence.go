@@ -35,6 +35,7 @@ const (
 	HeldBeyondStrength                 // figures used at a strength other than their own
 	FeedFlashes                        // the feed enters hotter than it boils
 	SmallDrivingForce                  // the area is very sensitive to any temperature
+	BoundaryJump                       // a state between two regions of the steam formulation
 )
 
 // Advisory is a remark on a result that stands.

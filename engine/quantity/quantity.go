@@ -52,3 +52,10 @@ func KilojoulesPerKilogram(v float64) Enthalpy { return Enthalpy(v * joulePerKil
 // Fraction is a mass fraction in kg/kg, 0 to 1: solids of a liquor, dryness
 // of steam.
 type Fraction float64
+
+// Entropy is a specific entropy in J/(kg K), 0 for saturated liquid at the
+// triple point.
+type Entropy float64
+
+// KilojoulesPerKilogramKelvin makes a specific entropy from kJ/(kg K).
+func KilojoulesPerKilogramKelvin(v float64) Entropy { return Entropy(v * joulePerKilojoule) }

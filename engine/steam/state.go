@@ -1,15 +1,20 @@
 // Package steam holds the properties of water and steam by the IAPWS
-// Industrial Formulation 1997, release R7-97(2012).
+// Industrial Formulation 1997, release R7-97(2012), with viscosity by R12-08,
+// thermal conductivity by R15-11 and surface tension by R1-76(2014).
+//
+// Its sums are code that the command generate writes from the tables of
+// package release.
 package steam
 
 import (
 	"fmt"
-	"math"
 
 	"calandria.example/calandria/engine/evidence"
 	"calandria.example/calandria/engine/fault"
 	"calandria.example/calandria/engine/quantity"
 )
+
+//go:generate go run ./generate
 
 // Phase names the phase of a state.
 type Phase int
@@ -26,7 +31,11 @@ const (
 
 // State is one state of water or steam, in SI units.
 type State struct {
-	Region      int // of R7-97; 4 between the saturated phases only
+	Region int // of R7-97; 4 between the saturated phases only
+	// Neighbour is the region beyond a boundary at which the state lies inside
+	// of the published jump, where both regions, or neither, have a state; 0
+	// elsewhere.
+	Neighbour   int
 	Phase       Phase
 	Pressure    quantity.Pressure
 	Temperature quantity.Temperature
@@ -38,7 +47,7 @@ type State struct {
 	InternalEnergy float64 // J/kg
 	Entropy        float64 // J/(kg K)
 
-	OnePhase            bool    // whether what follows exists; not in wet steam
+	OnePhase            bool    // whether what follows exists; not in wet steam nor at the critical point
 	Cp, Cv              float64 // J/(kg K)
 	SpeedOfSound        float64 // m/s
 	VolumeByTemperature float64 // (dv/dT)_p in m3/(kg K)
@@ -50,164 +59,143 @@ func (s State) EnthalpyByPressure() float64 {
 	return s.Volume - float64(s.Temperature)*s.VolumeByTemperature
 }
 
-// Limits of regions 1 and 2, IAPWS R7-97(2012) section 3.
-const (
-	highestPressure    = 100e6   // Pa
-	highestTemperature = 1073.15 // K
-)
-
-// onLine is how near to the saturation line, relative in pressure, a pressure
-// and a temperature do not tell the phases apart.
-const onLine = 1e-9
+// Advisories returns what a user of the state should know; nil for almost all.
+func (s State) Advisories() []evidence.Advisory {
+	if s.Neighbour == 0 {
+		return nil
+	}
+	return []evidence.Advisory{{
+		Code: evidence.BoundaryJump,
+		Message: fmt.Sprintf("the equations of regions %d and %d differ a little where they meet; here region %d, extended, answers for both",
+			s.Region, s.Neighbour, s.Region),
+		Limit: "IAPWS R7-97(2012) allows the regions to differ by its consistency requirements",
+	}}
+}
 
 // Models returns what the package rests on.
 func Models() []evidence.Model {
 	return []evidence.Model{{
-		ID: "iapws-r7-97", Revision: "R7-97(2012), regions 1, 2 and 4",
+		ID: "iapws-r7-97", Revision: "R7-97(2012), regions 1 to 5",
 		Source:     "IAPWS R7-97(2012), Industrial Formulation 1997 for the thermodynamic properties of water and steam",
-		ValidRange: "0 to 800 degC up to 100 MPa, without region 3 (denser than the line from 350 degC and 16.53 MPa to 590 degC and 100 MPa)",
+		ValidRange: "0 to 800 degC up to 100 MPa, 800 to 2000 degC up to 50 MPa",
 		Grade:      evidence.Confirmed, Inside: true,
 	}}
 }
 
-// AtPressureTemperature returns the state at p and t, in regions 1 and 2 of
-// IAPWS R7-97(2012). On the saturation line, where both phases have the same
-// p and t, it refuses with *fault.Invalid; elsewhere outside of the regions
-// with *fault.Range.
+// TransportModels returns what viscosity, conductivity and surface tension rest
+// on.
+func TransportModels() []evidence.Model {
+	const transportRange = "0 to 900 degC up to 100 MPa; 800 to 900 degC up to 50 MPa, by the density's own range"
+	return []evidence.Model{{
+		ID: "iapws-r12-08", Revision: "R12-08, industrial use: without critical enhancement",
+		Source:     "IAPWS R12-08, Formulation 2008 for the viscosity of ordinary water substance",
+		ValidRange: transportRange,
+		Grade:      evidence.Confirmed, Inside: true,
+	}, {
+		ID: "iapws-r15-11", Revision: "R15-11, industrial use: with critical enhancement",
+		Source:     "IAPWS R15-11, Formulation 2011 for the thermal conductivity of ordinary water substance",
+		ValidRange: transportRange,
+		Grade:      evidence.Confirmed, Inside: true,
+	}, {
+		ID: "iapws-r1-76", Revision: "R1-76(2014)",
+		Source:     "IAPWS R1-76(2014), surface tension of ordinary water substance",
+		ValidRange: "saturation line, 0 to 373.946 degC",
+		Grade:      evidence.Confirmed, Inside: true,
+	}}
+}
+
+// AtPressureTemperature returns the state at p and t: up to 100 MPa from
+// 273.15 K to 1073.15 K, and up to 50 MPa to 2273.15 K. On the saturation line,
+// where both phases have the same p and t, it refuses with *fault.Invalid;
+// outside of the range with *fault.Range.
 func AtPressureTemperature(p quantity.Pressure, t quantity.Temperature) (State, error) {
 	s := State{Pressure: p, Temperature: t}
-	if !(t >= coldest && t <= highestTemperature) {
-		return s, outside("temperature", "K", float64(t), coldest, highestTemperature)
-	}
-	if !(p > 0 && p <= highestPressure) {
-		return s, outside("pressure", "Pa", float64(p), 0, highestPressure)
-	}
-	if t > regionsEnd {
-		if limit := boundary23(float64(t)); float64(p) > limit {
-			return s, &fault.Range{
-				Quantity: "pressure", Unit: "Pa", Source: "IAPWS R7-97(2012) Eq. 5, boundary between regions 2 and 3",
-				Value: float64(p), Min: 0, Max: limit,
-			}
-		}
-		region2(float64(p), float64(t)).fill(&s, float64(p), float64(t))
-		s.Region, s.Phase = 2, SuperheatedVapour
-		return s, nil
-	}
-	saturation, _ := equation30(float64(t))
-	switch ratio := float64(p)/saturation - 1; {
-	case math.Abs(ratio) <= onLine:
-		return s, &fault.Invalid{
-			Field:  "dryness_fraction",
-			Value:  "missing",
-			Limit:  "needed on the saturation line",
-			WayOut: fmt.Sprintf("at %.6g kPa water boils at %.6g degC, where liquid and vapour have the same pressure and temperature: give dryness_fraction with one of the two", p.Kilopascals(), t.Celsius()),
-		}
-	case ratio > 0:
-		region1(float64(p), float64(t)).fill(&s, float64(p), float64(t))
-		s.Region, s.Phase = 1, CompressedLiquid
-	default:
-		region2(float64(p), float64(t)).fill(&s, float64(p), float64(t))
-		s.Region, s.Phase = 2, SuperheatedVapour
-	}
-	return s, nil
-}
-
-// boundary23 is IAPWS R7-97(2012) Eq. 5: the pressure in Pa at t in K that
-// divides region 2 from region 3, with the coefficients of Table 1.
-func boundary23(t float64) float64 {
-	return (0.34805185628969e3 - 0.11671859879975e1*t + 0.10192970039326e-2*t*t) * 1e6
-}
-
-// Saturation returns both saturated phases at t, 273.15 K to 623.15 K, by
-// regions 1 and 2 at the saturation pressure.
-func Saturation(t quantity.Temperature) (liquid, vapour State, err error) {
-	if !(t >= coldest && t <= regionsEnd) {
-		return liquid, vapour, outside("temperature", "K", float64(t), coldest, regionsEnd)
-	}
-	p, _ := equation30(float64(t))
-	liquid = State{Region: 1, Phase: SaturatedLiquid, Pressure: quantity.Pressure(p), Temperature: t, Saturated: true}
-	vapour = State{Region: 2, Phase: SaturatedVapour, Pressure: quantity.Pressure(p), Temperature: t, Saturated: true, Dryness: 1}
-	region1(p, float64(t)).fill(&liquid, p, float64(t))
-	region2(p, float64(t)).fill(&vapour, p, float64(t))
-	return liquid, vapour, nil
-}
-
-// AtTemperatureDryness returns the state on the saturation line at t, 273.15 K
-// to 623.15 K, with dryness 0 to 1.
-func AtTemperatureDryness(t quantity.Temperature, dryness quantity.Fraction) (State, error) {
-	if !(dryness >= 0 && dryness <= 1) {
-		return State{}, outside("dryness", "", float64(dryness), 0, 1)
-	}
-	liquid, vapour, err := Saturation(t)
+	at, err := placeOf(float64(p), float64(t))
 	if err != nil {
 		return State{}, err
 	}
-	switch dryness {
-	case 0:
-		return liquid, nil
+	switch at.region {
 	case 1:
-		return vapour, nil
+		fill1(&s, float64(p), float64(t))
+	case 2:
+		fill2(&s, float64(p), float64(t))
+	case 5:
+		fill5(&s, float64(p), float64(t))
+	default:
+		rho, ok := density3(float64(p), float64(t), at.dense)
+		if !ok {
+			return State{}, unfound(float64(p))
+		}
+		fill3(&s, rho, float64(t))
 	}
-	x := float64(dryness)
-	mix := func(l, v float64) float64 { return l + x*(v-l) }
-	return State{
-		Region: 4, Phase: WetSteam, Pressure: liquid.Pressure, Temperature: t, Saturated: true, Dryness: dryness,
-		Volume:         mix(liquid.Volume, vapour.Volume),
-		Enthalpy:       mix(liquid.Enthalpy, vapour.Enthalpy),
-		InternalEnergy: mix(liquid.InternalEnergy, vapour.InternalEnergy),
-		Entropy:        mix(liquid.Entropy, vapour.Entropy),
-	}, nil
+	s.Phase = phaseOf(float64(p), float64(t), at.region == 1 || at.dense)
+	return s, nil
 }
 
-// AtPressureDryness returns the state on the saturation line at p, 611.2 Pa to
-// 16.53 MPa, with dryness 0 to 1.
-func AtPressureDryness(p quantity.Pressure, dryness quantity.Fraction) (State, error) {
-	low, _ := equation30(coldest)
-	high, _ := equation30(regionsEnd)
-	if !(float64(p) >= low && float64(p) <= high) {
-		return State{}, outside("pressure", "Pa", float64(p), low, high)
+// phaseOf names the phase of a state off the saturation line.
+func phaseOf(p, t float64, dense bool) Phase {
+	switch {
+	case t > critical && p > lineTop():
+		return Supercritical
+	case t <= critical && dense:
+		return CompressedLiquid
 	}
-	t := quantity.Temperature(min(max(equation31(float64(p)), coldest), regionsEnd))
-	s, err := AtTemperatureDryness(t, dryness)
-	// Eqs. 30 and 31 invert each other to rounding; keep what was asked.
-	s.Pressure = p
-	return s, err
+	return SuperheatedVapour
 }
 
-// LiquidEnthalpy returns the enthalpy in J/kg of saturated liquid at t,
-// 273.15 K to 623.15 K, by region 1, and its derivative along the saturation
-// line.
-func LiquidEnthalpy(t quantity.Temperature) (h, byT float64, err error) {
-	if !(t >= coldest && t <= regionsEnd) {
-		return 0, 0, outside("temperature", "K", float64(t), coldest, regionsEnd)
+// Enthalpy returns the specific enthalpy at p and t as AtPressureTemperature
+// does, and nothing else, for those who need many.
+func Enthalpy(p quantity.Pressure, t quantity.Temperature) (quantity.Enthalpy, error) {
+	at, err := placeOf(float64(p), float64(t))
+	if err != nil {
+		return 0, err
 	}
-	var s State
-	p, slope := equation30(float64(t))
-	region1(p, float64(t)).fill(&s, p, float64(t))
-	s.Temperature = t
-	return s.Enthalpy, s.Cp + s.EnthalpyByPressure()*slope, nil
+	switch at.region {
+	case 1:
+		return quantity.Enthalpy(region1Enthalpy(float64(p), float64(t))), nil
+	case 2:
+		return quantity.Enthalpy(region2Enthalpy(float64(p), float64(t))), nil
+	case 5:
+		return quantity.Enthalpy(region5Enthalpy(float64(p), float64(t))), nil
+	}
+	rho, ok := density3(float64(p), float64(t), at.dense)
+	if !ok {
+		return 0, unfound(float64(p))
+	}
+	return quantity.Enthalpy(region3(rho, float64(t)).h), nil
 }
 
-// VapourEnthalpy returns the enthalpy in J/kg of vapour at p and t by region
-// 2, 273.15 K to 1073.15 K, and its derivatives by p and t. For the sake of
-// solvers it goes on smoothly a little below the condensing temperature.
-func VapourEnthalpy(p quantity.Pressure, t quantity.Temperature) (h, byP, byT float64, err error) {
-	if !(t >= coldest && t <= highestTemperature) {
-		return 0, 0, 0, outside("temperature", "K", float64(t), coldest, highestTemperature)
+// Density returns the density in kg/m3 at p and t as AtPressureTemperature
+// does, and nothing else.
+func Density(p quantity.Pressure, t quantity.Temperature) (float64, error) {
+	at, err := placeOf(float64(p), float64(t))
+	if err != nil {
+		return 0, err
 	}
-	limit := highestPressure
-	if t < 863.15 {
-		limit = boundary23(max(float64(t), regionsEnd))
+	switch at.region {
+	case 1:
+		return 1 / region1Volume(float64(p), float64(t)), nil
+	case 2:
+		return 1 / region2Volume(float64(p), float64(t)), nil
+	case 5:
+		return 1 / region5Volume(float64(p), float64(t)), nil
 	}
-	if !(p > 0 && float64(p) <= limit) {
-		return 0, 0, 0, outside("pressure", "Pa", float64(p), 0, limit)
+	rho, ok := density3(float64(p), float64(t), at.dense)
+	if !ok {
+		return 0, unfound(float64(p))
 	}
-	var s State
-	region2(float64(p), float64(t)).fill(&s, float64(p), float64(t))
-	s.Temperature = t
-	return s.Enthalpy, s.EnthalpyByPressure(), s.Cp, nil
+	return rho, nil
 }
 
-func outside(what, unit string, value, low, high float64) error {
-	return &fault.Range{Quantity: what, Unit: unit, Source: "IAPWS R7-97(2012) regions 1, 2 and 4", Value: value, Min: low, Max: high}
+func onTheLine(p, t float64) error {
+	return &fault.Invalid{
+		Field:  "dryness_fraction",
+		Value:  "missing",
+		Limit:  "needed on the saturation line",
+		WayOut: fmt.Sprintf("at %.6g kPa water boils at %.6g degC, where liquid and vapour have the same pressure and temperature: give dryness_fraction with one of the two", quantity.Pressure(p).Kilopascals(), quantity.Temperature(t).Celsius()),
+	}
+}
+
+func unfound(residual float64) error {
+	return &fault.NotConverged{Iterations: mostSteps, Residual: residual, Where: "density of region 3"}
 }

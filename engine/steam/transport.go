@@ -1,0 +1,130 @@
+package steam
+
+import (
+	"math"
+
+	"calandria.example/calandria/engine/quantity"
+	"calandria.example/calandria/engine/steam/release"
+)
+
+// hottestTransport is where IAPWS R12-08 and R15-11 end, in K. They begin at
+// 273.16 K; the 10 mK down to the start of R7-97 are taken along.
+const hottestTransport = 1173.15
+
+// Viscosity returns the dynamic viscosity in Pa s, by IAPWS R12-08 without its
+// critical enhancement, as that release recommends for industrial use. It does
+// not exist (ok is false) in wet steam and above 1173.15 K.
+func (s State) Viscosity() (mu float64, ok bool) {
+	if s.Region == 4 || s.Temperature > hottestTransport {
+		return 0, false
+	}
+	return viscosity(1/s.Volume, float64(s.Temperature)), true
+}
+
+// Conductivity returns the thermal conductivity in W/(m K), by IAPWS R15-11
+// with the critical enhancement for industrial use. It does not exist (ok is
+// false) in wet steam, above 1173.15 K and at the critical point.
+func (s State) Conductivity() (lambda float64, ok bool) {
+	if !s.OnePhase || s.Temperature > hottestTransport {
+		return 0, false
+	}
+	rho := 1 / s.Volume
+	return conductivity(rho, float64(s.Temperature), s.Cp, s.Cv, -rho*rho*s.VolumeByPressure), true
+}
+
+// SurfaceTension returns the surface tension between the saturated phases in
+// N/m, by IAPWS R1-76(2014). It exists (ok is true) on the saturation line.
+func (s State) SurfaceTension() (sigma float64, ok bool) {
+	if !s.Saturated {
+		return 0, false
+	}
+	tau := 1 - float64(s.Temperature)/critical
+	return 235.8e-3 * math.Pow(tau, 1.256) * (1 - 0.625*tau), true
+}
+
+// Viscosity returns the dynamic viscosity in Pa s at p and t, off the
+// saturation line and up to 1173.15 K, as State.Viscosity does.
+func Viscosity(p quantity.Pressure, t quantity.Temperature) (float64, error) {
+	if t > hottestTransport {
+		return 0, outsideTransport(t, "IAPWS R12-08")
+	}
+	rho, err := Density(p, t)
+	if err != nil {
+		return 0, err
+	}
+	return viscosity(rho, float64(t)), nil
+}
+
+// Conductivity returns the thermal conductivity in W/(m K) at p and t, off the
+// saturation line and up to 1173.15 K, as State.Conductivity does.
+func Conductivity(p quantity.Pressure, t quantity.Temperature) (float64, error) {
+	if t > hottestTransport {
+		return 0, outsideTransport(t, "IAPWS R15-11")
+	}
+	s, err := AtPressureTemperature(p, t)
+	if err != nil {
+		return 0, err
+	}
+	lambda, ok := s.Conductivity()
+	if !ok {
+		return 0, onTheLine(float64(p), float64(t))
+	}
+	return lambda, nil
+}
+
+// viscosity is IAPWS R12-08 Eqs. 10 to 12 with mu2 = 1.
+func viscosity(rho, t float64) float64 {
+	inverse, delta := critical/t, rho/criticalDensity
+	mu0 := 100e-6 / (math.Sqrt(inverse) * viscosity0(inverse))
+	return mu0 * math.Exp(delta*viscosity1(inverse-1, delta-1))
+}
+
+// conductivity is IAPWS R15-11 Eqs. 15 to 25, with cp and cv in J/(kg K) and
+// the derivative of density by pressure at constant temperature in kg/(m3 Pa).
+func conductivity(rho, t, cp, cv, byPressure float64) float64 {
+	const (
+		amplitude    = 177.8514      // Lambda
+		reach        = 1 / 0.40      // 1/nm
+		correlation  = 0.13          // nm
+		susceptible  = 0.06          // Gamma0
+		reference    = 1.5           // reduced temperature
+		exponent     = 0.630 / 1.239 // nu/gamma
+		cpUnit       = 461.51805     // J/(kg K)
+		pressureUnit = 22.064e6      // Pa
+		smallest     = 1.2e-7        // of y, below which the enhancement vanishes
+	)
+	inverse, delta := critical/t, rho/criticalDensity
+	lambda0 := 1e-3 / (math.Sqrt(inverse) * conductivity0(inverse))
+	lambda := lambda0 * math.Exp(delta*conductivity1(inverse-1, delta-1))
+	zeta := byPressure * pressureUnit / criticalDensity
+	excess := delta * (zeta - referenceCompressibility(delta)*reference*inverse)
+	if excess <= 0 {
+		return lambda
+	}
+	y := reach * correlation * math.Pow(excess/susceptible, exponent)
+	if y < smallest {
+		return lambda
+	}
+	ratio := cv / cp
+	z := 2 / (math.Pi * y) * ((1-ratio)*math.Atan(y) + ratio*y + math.Expm1(-1/(1/y+y*y/(3*delta*delta))))
+	return lambda + 1e-9*amplitude*delta*(cp/cpUnit)/(inverse*viscosity(rho, t))*z
+}
+
+// referenceCompressibility is IAPWS R15-11 Eq. 25: the compressibility at the
+// reference temperature, where there is no enhancement.
+func referenceCompressibility(delta float64) float64 {
+	i := 0
+	for i < len(release.CompressibilityEnds) && delta > release.CompressibilityEnds[i] {
+		i++
+	}
+	a := &release.Compressibility[i]
+	sum := a[5]
+	for j := 4; j >= 0; j-- {
+		sum = math.FMA(sum, delta, a[j])
+	}
+	return 1 / sum
+}
+
+func outsideTransport(t quantity.Temperature, source string) error {
+	return outsideBy("temperature", "K", source, float64(t), coldest, hottestTransport)
+}
