@@ -17,21 +17,29 @@ func density3(p, t float64, dense bool) (rho float64, ok bool) {
 		}
 	}
 	rho = startingDensity(p, t, dense)
+	// Mostly the start is so good that one step of Halley's method is enough.
+	if at, slope, bend := region3PressureCurve(rho, t); slope > 0 {
+		step := (at - p) / slope
+		if curved := step / (1 - step*bend/(2*slope*rho)); math.Abs(step) <= firstStep*rho*min(1, slope*rho/p) {
+			return rho - curved, true
+		}
+	}
 	for range mostSteps {
 		at, slope := region3Pressure(rho, t)
 		miss := at - p
 		// Where pressure falls as density rises no state is stable: the
 		// boundary of that zone lies towards the wanted side.
 		stable := slope > 0
-		if stable && math.Abs(miss) <= densityTolerance*p {
-			return rho, true
+		step := miss / slope
+		if stable && (math.Abs(miss) <= densityTolerance*p || math.Abs(step) <= lastStep*rho*min(1, slope*rho/p)) {
+			return rho - step, true
 		}
 		if stable && miss > 0 || !stable && !dense {
 			high = rho
 		} else {
 			low = rho
 		}
-		next := rho - miss/slope
+		next := rho - step
 		if !stable || !(next > low && next < high) {
 			next = (low + high) / 2
 		}
@@ -49,34 +57,47 @@ const (
 	// densityTolerance is relative in pressure; the equation itself can be
 	// evaluated to some 1e-13.
 	densityTolerance = 1e-12
-	mostSteps        = 80
+	// lastStep is relative in density: what a step of Newton's method leaves is
+	// of the order of its square, less where pressure hardly depends on density.
+	lastStep = 2e-7
+	// firstStep is the same for one of Halley's method, which leaves the cube.
+	firstStep = 3e-5
+	mostSteps = 80
 )
 
-// startingDensity reads the table of densities.
+// startingDensity reads the table of densities, by parabolas through three
+// places along the temperature and three across.
 func startingDensity(p, t float64, dense bool) float64 {
 	var along, line float64
+	first, last := 0, startBelow
 	if t < critical {
 		along = (t - regionsEnd) * (startBelow / (critical - regionsEnd))
 		line = saturationPressure(t)
 	} else {
 		along = startBelow + (t-critical)*(startAbove/(hottest3-critical))
 		line = lineAbove(t)
+		first, last = startBelow, startBelow+startAbove
 	}
 	table, width := &startDensity[0], highestPressure-line
 	if !dense {
 		table, width = &startDensity[1], min(boundary23(t)-line, -lineNarrow)
 	}
 	across := math.Sqrt(max((p-line)/width, 0)) * startAcross
-	i, j := cell(along, startBelow+startAbove), cell(across, startAcross)
+	i, j := middle(along, first, last), middle(across, 0, startAcross)
 	x, y := along-float64(i), across-float64(j)
-	near, far := &table[i], &table[i+1]
-	a := float64(near[j]) + x*float64(far[j]-near[j])
-	b := float64(near[j+1]) + x*float64(far[j+1]-near[j+1])
-	return a + y*(b-a)
+	a, b, c := table[i-1][j-1:j+2], table[i][j-1:j+2], table[i+1][j-1:j+2]
+	return parabola(x,
+		parabola(y, float64(a[0]), float64(a[1]), float64(a[2])),
+		parabola(y, float64(b[0]), float64(b[1]), float64(b[2])),
+		parabola(y, float64(c[0]), float64(c[1]), float64(c[2])))
 }
 
-// cell is the cell of a table with count cells in which a place lies, the last
-// one for what lies beyond.
-func cell(at float64, count int) int {
-	return min(max(int(at), 0), count-1)
+// middle is the place nearest to at that has a neighbour on both sides.
+func middle(at float64, first, last int) int {
+	return min(max(int(at+0.5), first+1), last-1)
+}
+
+// parabola goes through values at -1, 0 and 1.
+func parabola(at, before, middle, after float64) float64 {
+	return middle + at/2*(after-before+at*(after+before-2*middle))
 }

@@ -56,8 +56,35 @@ func Temperature(p quantity.Pressure, h quantity.Enthalpy) (quantity.Temperature
 			}
 		}
 	}
+	if float64(p) > lineEnd*(1+1e-6) && p <= highestPressure {
+		if t, ok := denseTemperature(float64(p), float64(h)); ok {
+			return quantity.Temperature(t), nil
+		}
+	}
 	s, err := AtPressureEnthalpy(p, h)
 	return s.Temperature, err
+}
+
+// denseTemperature solves for the temperature of region 3 above the critical
+// pressure, clear of its ends, by two steps of Newton's method; ok is false
+// where they do not do.
+func denseTemperature(p, h float64) (t float64, ok bool) {
+	const enough = 1e-6 // relative: a miss that the second step squares
+	rho, t := denseStart(p, h)
+	for step := 0; ; step++ {
+		byDelta, byDeltaDelta, byTau, byTauTau, byDeltaTau := region3Slopes(rho, t)
+		a := helmholtzOf(rho, t, 0, byDelta, byDeltaDelta, byTau, byTauTau, byDeltaTau)
+		missP, miss := a.p-p, a.h-h
+		determinant := a.pByRho*a.hByT - a.pByT*a.hByRho
+		rho -= (missP*a.hByT - miss*a.pByT) / determinant
+		t -= (a.pByRho*miss - a.hByRho*missP) / determinant
+		if math.Abs(missP) <= enough*p && math.Abs(miss) <= enough*math.Abs(h) {
+			return t, t > regionsEnd+clear && t < boundary23Temperature(p)-clear && rho > thinnest && rho < densest
+		}
+		if step > 1 || !(rho > thinnest && rho < densest && t > regionsEnd && t < hottest3) {
+			return 0, false
+		}
+	}
 }
 
 const (

@@ -34,14 +34,14 @@ const onLine = 1e-9
 // divides region 2 from region 3. From 863.15 K up it lies above 100 MPa.
 func boundary23(t float64) float64 {
 	n := &release.Boundary23
-	return math.FMA(math.FMA(n[2], t, n[1]), t, n[0]) * 1e6
+	return (float64((float64(n[2]*t)+n[1])*t) + n[0]) * 1e6
 }
 
 // boundary23Temperature inverts Eq. 5 itself; the printed Eq. 6 does so to its
 // own rounding only.
 func boundary23Temperature(p float64) float64 {
 	n := &release.Boundary23
-	root := math.Sqrt(math.FMA(n[1], n[1], -float64(4*n[2]*(n[0]-p/1e6))))
+	root := math.Sqrt(float64(n[1]*n[1]) - float64(4*n[2]*(n[0]-p/1e6)))
 	return (root - n[1]) / (2 * n[2])
 }
 
@@ -69,8 +69,8 @@ func placeOf(p, t float64) (place, error) {
 		}
 		return place{region: 5}, nil
 	}
-	if t > regionsEnd && p <= boundary23(t) {
-		return place{region: 2}, nil
+	if region := clearRegion(p, t); region != 0 {
+		return place{region: region}, nil
 	}
 	if t > critical {
 		return place{region: 3, dense: p > lineAbove(t)}, nil
@@ -89,59 +89,76 @@ func placeOf(p, t float64) (place, error) {
 	return place{region: 2}, nil
 }
 
-// lineAbove goes on from the saturation line, in its direction.
-func lineAbove(t float64) float64 { return math.FMA(lineSlope, t-critical, lineEnd) }
-
-// gibbs is a dimensionless Gibbs energy and its derivatives.
-type gibbs struct {
-	value, byPi, byPiPi, byTau, byTauTau, byPiTau float64
+// clearRegion tells region 1 or 2 where no look at the saturation line itself is
+// needed, and 0 elsewhere.
+func clearRegion(p, t float64) int {
+	const apart = 1e-8 // relative: more than onLine and rounding
+	if !(t >= coldest && t <= hottest2 && p >= lowestPressure && p <= highestPressure) {
+		return 0
+	}
+	if t >= regionsEnd {
+		if p <= boundary23(t) {
+			return 2
+		}
+		return 0
+	}
+	below := int(t - coldest)
+	switch {
+	case p > linePressure[below+1]*(1+apart):
+		return 1
+	case p < linePressure[below]*(1-apart):
+		return 2
+	}
+	return 0
 }
 
-// withLogarithm adds ln pi, the part of an ideal gas that region 2 and region 5
-// have.
-func (g gibbs) withLogarithm(pi float64) gibbs {
-	g.value += math.Log(pi)
-	g.byPi += 1 / pi
-	g.byPiPi -= 1 / (pi * pi)
-	return g
+// lineAbove goes on from the saturation line, in its direction.
+func lineAbove(t float64) float64 { return float64(lineSlope*(t-critical)) + lineEnd }
+
+// gibbs is the Gibbs energy over R T and its derivatives, times pi and tau as
+// often as derived by them.
+type gibbs struct {
+	value, byPi, byPiPi, byTau, byTauTau, byPiTau float64
 }
 
 // fill1, fill2 and fill5 set the properties of s at p in Pa and t in K.
 func fill1(s *State, p, t float64) {
 	var g gibbs
 	g.value, g.byPi, g.byPiPi, g.byTau, g.byTauTau, g.byPiTau = region1Gibbs(p, t)
-	g.fill(s, p, t, p/16.53e6, 1386/t)
+	g.fill(s, p, t)
 	s.Region = 1
 }
 
 func fill2(s *State, p, t float64) {
 	var g gibbs
 	g.value, g.byPi, g.byPiPi, g.byTau, g.byTauTau, g.byPiTau = region2Gibbs(p, t)
-	g.withLogarithm(p/1e6).fill(s, p, t, p/1e6, 540/t)
+	g.value += math.Log(p * 1e-6)
+	g.fill(s, p, t)
 	s.Region = 2
 }
 
 func fill5(s *State, p, t float64) {
 	var g gibbs
 	g.value, g.byPi, g.byPiPi, g.byTau, g.byTauTau, g.byPiTau = region5Gibbs(p, t)
-	g.withLogarithm(p/1e6).fill(s, p, t, p/1e6, 1000/t)
+	g.value += math.Log(p * 1e-6)
+	g.fill(s, p, t)
 	s.Region = 5
 }
 
 // fill sets the properties of s from g: the relations of IAPWS R7-97(2012)
 // Table 3, which hold for the whole Gibbs energy of any region.
-func (g gibbs) fill(s *State, p, t, pi, tau float64) {
+func (g gibbs) fill(s *State, p, t float64) {
 	rt := gasConstant * t
-	mixed := g.byPi - tau*g.byPiTau
-	s.Volume = rt / p * pi * g.byPi
-	s.Enthalpy = rt * tau * g.byTau
-	s.InternalEnergy = rt * (tau*g.byTau - pi*g.byPi)
-	s.Entropy = gasConstant * (tau*g.byTau - g.value)
-	s.Cp = -gasConstant * tau * tau * g.byTauTau
+	mixed := g.byPi - g.byPiTau
+	s.Volume = rt / p * g.byPi
+	s.Enthalpy = rt * g.byTau
+	s.InternalEnergy = rt * (g.byTau - g.byPi)
+	s.Entropy = gasConstant * (g.byTau - g.value)
+	s.Cp = -gasConstant * g.byTauTau
 	s.Cv = s.Cp + gasConstant*mixed*mixed/g.byPiPi
-	s.SpeedOfSound = math.Sqrt(rt * g.byPi * g.byPi / (mixed*mixed/(tau*tau*g.byTauTau) - g.byPiPi))
-	s.VolumeByTemperature = gasConstant / p * pi * mixed
-	s.VolumeByPressure = rt / (p * p) * pi * pi * g.byPiPi
+	s.SpeedOfSound = g.byPi * math.Sqrt(rt/(mixed*mixed/g.byTauTau-g.byPiPi))
+	s.VolumeByTemperature = gasConstant / p * mixed
+	s.VolumeByPressure = rt / (p * p) * g.byPiPi
 	s.OnePhase = true
 }
 
@@ -158,16 +175,21 @@ type helmholtz struct {
 // IAPWS R7-97(2012) Table 31.
 func region3(rho, t float64) helmholtz {
 	value, byDelta, byDeltaDelta, byTau, byTauTau, byDeltaTau := region3Helmholtz(rho, t)
-	delta, tau := rho/322, critical/t
-	value += release.Region3Log * math.Log(delta)
-	first := release.Region3Log + delta*byDelta
-	twice := delta*delta*byDeltaDelta - release.Region3Log
-	mixed := first - delta*tau*byDeltaTau
+	value += release.Region3Log * math.Log(rho/criticalDensity)
+	return helmholtzOf(rho, t, value, byDelta, byDeltaDelta, byTau, byTauTau, byDeltaTau)
+}
+
+// helmholtzOf joins the derivatives; without the value the entropy is of no
+// use.
+func helmholtzOf(rho, t, value, byDelta, byDeltaDelta, byTau, byTauTau, byDeltaTau float64) helmholtz {
+	first := release.Region3Log + byDelta
+	twice := byDeltaDelta - release.Region3Log
+	mixed := first - byDeltaTau
 	rt := gasConstant * t
 	a := helmholtz{
 		p: rho * rt * first, pByRho: rt * (2*first + twice), pByT: gasConstant * rho * mixed,
-		u: rt * tau * byTau, s: gasConstant * (tau*byTau - value),
-		cv: -gasConstant * tau * tau * byTauTau,
+		u: rt * byTau, s: gasConstant * (byTau - value),
+		cv: -gasConstant * byTauTau,
 	}
 	a.h = a.u + rt*first
 	// dh = T ds + v dp, and (ds/drho)_T = -(dp/dT)_rho / rho^2 by Maxwell.

@@ -195,14 +195,14 @@ func saturationPressure(t float64) float64 {
 }
 
 // root30 solves the quadratic equation in the fourth root of p that Eqs. 30 and
-// 31 share. The products are fused by hand, so that every machine gives the
-// same digits.
+// 31 share. The conversions keep a compiler
+// from fusing, so that every machine gives the same digits.
 func root30(theta float64) (a, b, c, x float64) {
 	n := &release.Saturation
-	a = math.FMA(theta+n[0], theta, n[1])
-	b = math.FMA(math.FMA(n[2], theta, n[3]), theta, n[4])
-	c = math.FMA(math.FMA(n[5], theta, n[6]), theta, n[7])
-	root := math.Sqrt(math.FMA(b, b, -float64(4*a*c)))
+	a = float64((theta+n[0])*theta) + n[1]
+	b = float64((float64(n[2]*theta)+n[3])*theta) + n[4]
+	c = float64((float64(n[5]*theta)+n[6])*theta) + n[7]
+	root := math.Sqrt(float64(b*b) - float64(4*a*c))
 	return a, b, c, 2 * c / (root - b)
 }
 
@@ -211,12 +211,12 @@ func saturationTemperature(p float64) float64 {
 	n := &release.Saturation
 	root := math.Sqrt(p * 1e-6)
 	beta := math.Sqrt(root)
-	e := math.FMA(n[2], beta, root) + n[5]
-	f := math.FMA(n[3], beta, math.FMA(n[0], root, n[6]))
-	g := math.FMA(n[4], beta, math.FMA(n[1], root, n[7]))
-	d := 2 * g / (-f - math.Sqrt(math.FMA(f, f, -float64(4*e*g))))
+	e := root + float64(n[2]*beta) + n[5]
+	f := float64(n[0]*root) + float64(n[3]*beta) + n[6]
+	g := float64(n[1]*root) + float64(n[4]*beta) + n[7]
+	d := 2 * g / (-f - math.Sqrt(float64(f*f)-float64(4*e*g)))
 	sum := n[9] + d
-	return (sum - math.Sqrt(math.FMA(sum, sum, -4*math.FMA(n[9], d, n[8])))) / 2
+	return (sum - math.Sqrt(float64(sum*sum)-4*(float64(n[9]*d)+n[8]))) / 2
 }
 
 // lineStart, lineJoint and lineTop are the pressures of Eq. 30 in Pa at the

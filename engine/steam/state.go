@@ -146,6 +146,12 @@ func phaseOf(p, t float64, dense bool) Phase {
 // Enthalpy returns the specific enthalpy at p and t as AtPressureTemperature
 // does, and nothing else, for those who need many.
 func Enthalpy(p quantity.Pressure, t quantity.Temperature) (quantity.Enthalpy, error) {
+	switch clearRegion(float64(p), float64(t)) {
+	case 1:
+		return quantity.Enthalpy(region1Enthalpy(float64(p), float64(t))), nil
+	case 2:
+		return quantity.Enthalpy(region2Enthalpy(float64(p), float64(t))), nil
+	}
 	at, err := placeOf(float64(p), float64(t))
 	if err != nil {
 		return 0, err

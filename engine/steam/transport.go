@@ -3,6 +3,7 @@ package steam
 import (
 	"math"
 
+	"calandria.example/calandria/engine/fault"
 	"calandria.example/calandria/engine/quantity"
 	"calandria.example/calandria/engine/steam/release"
 )
@@ -61,15 +62,53 @@ func Conductivity(p quantity.Pressure, t quantity.Temperature) (float64, error) 
 	if t > hottestTransport {
 		return 0, outsideTransport(t, "IAPWS R15-11")
 	}
-	s, err := AtPressureTemperature(p, t)
+	at, err := placeOf(float64(p), float64(t))
 	if err != nil {
 		return 0, err
 	}
-	lambda, ok := s.Conductivity()
-	if !ok {
-		return 0, onTheLine(float64(p), float64(t))
+	if at.region == 3 {
+		rho, ok := density3(float64(p), float64(t), at.dense)
+		if !ok {
+			return 0, unfound(float64(p))
+		}
+		return conductivity3(rho, float64(t))
 	}
-	return lambda, nil
+	g := response(at.region, float64(p), float64(t))
+	mixed := g.byPi - g.byPiTau
+	cp := -gasConstant * g.byTauTau
+	rho := float64(p) / (gasConstant * float64(t) * g.byPi)
+	return conductivity(rho, float64(t), cp, cp+gasConstant*mixed*mixed/g.byPiPi, -rho*g.byPiPi/(float64(p)*g.byPi)), nil
+}
+
+// response returns the derivatives of a region other than 3 that its volume,
+// heat capacities and compressibility take.
+func response(region int, p, t float64) (g gibbs) {
+	switch region {
+	case 1:
+		g.byPi, g.byPiPi, g.byTauTau, g.byPiTau = region1Response(p, t)
+	case 2:
+		g.byPi, g.byPiPi, g.byTauTau, g.byPiTau = region2Response(p, t)
+	default:
+		g.byPi, g.byPiPi, g.byTauTau, g.byPiTau = region5Response(p, t)
+	}
+	return g
+}
+
+// conductivity3 is the conductivity of region 3 at a density. At the critical
+// point it does not exist.
+func conductivity3(rho, t float64) (float64, error) {
+	byDelta, byDeltaDelta, byTauTau, byDeltaTau := region3Response(rho, t)
+	first := release.Region3Log + byDelta
+	stiffness := 2*first + byDeltaDelta - release.Region3Log // (dp/drho)_T over R T
+	if !(stiffness > leastStiffness) {
+		return 0, &fault.Invalid{
+			Field: "temperature", Value: "that of the critical point", Limit: "off the critical point",
+			WayOut: "conductivity grows without bound there: give another pressure or temperature",
+		}
+	}
+	mixed := first - byDeltaTau
+	cv := -gasConstant * byTauTau
+	return conductivity(rho, t, cv+gasConstant*mixed*mixed/stiffness, cv, 1/(gasConstant*t*stiffness)), nil
 }
 
 // viscosity is IAPWS R12-08 Eqs. 10 to 12 with mu2 = 1.
@@ -101,12 +140,12 @@ func conductivity(rho, t, cp, cv, byPressure float64) float64 {
 	if excess <= 0 {
 		return lambda
 	}
-	y := reach * correlation * math.Pow(excess/susceptible, exponent)
+	y := reach * correlation * math.Exp(exponent*math.Log(excess/susceptible))
 	if y < smallest {
 		return lambda
 	}
 	ratio := cv / cp
-	z := 2 / (math.Pi * y) * ((1-ratio)*math.Atan(y) + ratio*y + math.Expm1(-1/(1/y+y*y/(3*delta*delta))))
+	z := 2 / (math.Pi * y) * ((1-ratio)*math.Atan(y) + ratio*y - 1 + math.Exp(-1/(1/y+y*y/(3*delta*delta))))
 	return lambda + 1e-9*amplitude*delta*(cp/cpUnit)/(inverse*viscosity(rho, t))*z
 }
 

@@ -17,7 +17,7 @@ const (
 	subtract // a - b
 	multiply // a * b
 	divide   // a / b
-	fused    // a * b + c, rounded once
+	weighted // a * b + c, rounded twice
 )
 
 // step computes one value from values of earlier steps, which it names by
@@ -32,29 +32,44 @@ type step struct {
 // formula is straight-line code. Equal steps are one step, so that powers are
 // shared by all sums of a formula.
 type formula struct {
-	steps   []step
-	known   map[step]int
-	results []int
+	steps       []step
+	depth       []int // of the longest chain of steps that leads to a value
+	known       map[step]int
+	reciprocals map[int]int // of bases whose reciprocal costs less than a division
+	results     []int
 }
 
-func newFormula() *formula { return &formula{known: map[step]int{}} }
+func newFormula() *formula {
+	return &formula{known: map[step]int{}, reciprocals: map[int]int{}}
+}
 
 func (f *formula) put(s step) int {
 	if at, ok := f.known[s]; ok {
 		return at
 	}
+	depth := 0
+	if s.operation != input && s.operation != constant {
+		const division = 3 // as slow as so many other steps
+		depth = max(f.depth[s.a], f.depth[s.b], f.depth[s.c]) + 1
+		if s.operation == divide {
+			depth += division
+		}
+	}
 	f.steps = append(f.steps, s)
+	f.depth = append(f.depth, depth)
 	f.known[s] = len(f.steps) - 1
 	return len(f.steps) - 1
 }
 
-func (f *formula) input(name string) int        { return f.put(step{operation: input, name: name}) }
-func (f *formula) constant(v float64) int       { return f.put(step{operation: constant, number: v}) }
-func (f *formula) add(a, b int) int             { return f.put(step{operation: add, a: a, b: b}) }
-func (f *formula) subtract(a, b int) int        { return f.put(step{operation: subtract, a: a, b: b}) }
-func (f *formula) multiply(a, b int) int        { return f.put(step{operation: multiply, a: a, b: b}) }
-func (f *formula) divide(a, b int) int          { return f.put(step{operation: divide, a: a, b: b}) }
-func (f *formula) fused(a, b, c int) int        { return f.put(step{operation: fused, a: a, b: b, c: c}) }
+func (f *formula) input(name string) int  { return f.put(step{operation: input, name: name}) }
+func (f *formula) constant(v float64) int { return f.put(step{operation: constant, number: v}) }
+func (f *formula) add(a, b int) int       { return f.put(step{operation: add, a: a, b: b}) }
+func (f *formula) subtract(a, b int) int  { return f.put(step{operation: subtract, a: a, b: b}) }
+func (f *formula) multiply(a, b int) int  { return f.put(step{operation: multiply, a: a, b: b}) }
+func (f *formula) divide(a, b int) int    { return f.put(step{operation: divide, a: a, b: b}) }
+func (f *formula) weighted(a, b, c int) int {
+	return f.put(step{operation: weighted, a: a, b: b, c: c})
+}
 func (f *formula) scaled(by float64, a int) int { return f.multiply(f.constant(by), a) }
 
 // powers makes the powers of one base, negative ones by its reciprocal. All
@@ -84,14 +99,17 @@ func (p *powers) at(n int) int {
 		return p.chain(p.up, n)
 	}
 	if p.reciprocal < 0 {
-		p.reciprocal = p.f.divide(p.f.constant(1), p.base)
+		var known bool
+		if p.reciprocal, known = p.f.reciprocals[p.base]; !known {
+			p.reciprocal = p.f.divide(p.f.constant(1), p.base)
+		}
 		p.down[1] = p.reciprocal
 	}
 	return p.chain(p.down, -n)
 }
 
-// chain makes the n-th power from those that are there, by one multiplication
-// if two of them add up to n.
+// chain makes the n-th power from those that are there: by one multiplication
+// if two of them add up to n, and then by those two that are ready first.
 func (p *powers) chain(there map[int]int, n int) int {
 	if at, ok := there[n]; ok {
 		return at
@@ -103,11 +121,12 @@ func (p *powers) chain(there map[int]int, n int) int {
 		}
 	}
 	slices.Sort(have)
-	most := have[len(have)-1]
-	for i := len(have) - 1; i >= 0; i-- {
-		if _, ok := there[n-have[i]]; ok {
-			most = have[i]
-			break
+	most, soonest := have[len(have)-1], -1
+	for _, m := range have {
+		if other, ok := there[n-m]; ok {
+			if ready := max(p.f.depth[there[m]], p.f.depth[other]); soonest < 0 || ready < soonest {
+				most, soonest = m, ready
+			}
 		}
 	}
 	there[n] = p.f.multiply(there[most], p.chain(there, n-most))
@@ -133,6 +152,19 @@ func (f *formula) sum(terms []release.Term, x, y int, orders ...order) []int {
 	for _, o := range orders {
 		least.x, least.y = min(least.x, o.x), min(least.y, o.y)
 	}
+	return f.sumFrom(least, terms, x, y, orders)
+}
+
+// reduced is sum with every derivative multiplied by its bases, as often as it
+// is derived by them: x^2 y (d3/dx2dy), which takes no division.
+func (f *formula) reduced(terms []release.Term, x, y int, orders ...order) []int {
+	return f.sumFrom(order{}, terms, x, y, orders)
+}
+
+// sumFrom adds up the powers that are left after deriving least times, and
+// divides by the bases for every order beyond, unless least is none.
+func (f *formula) sumFrom(least order, terms []release.Term, x, y int, orders []order) []int {
+	divide := least != order{}
 	var atX, atY []int // the powers of x, in their order, and those of y
 	for _, c := range terms {
 		if falling(c.I, least.x)*falling(c.J, least.y) == 0 {
@@ -149,65 +181,45 @@ func (f *formula) sum(terms []release.Term, x, y int, orders ...order) []int {
 	}
 	needed := lowered
 	for _, o := range orders {
-		if o.x > least.x {
+		if divide && o.x > least.x {
 			needed = append(slices.Clone(needed), -1)
 		}
-		if o.y > least.y {
+		if divide && o.y > least.y {
 			atY = append(atY, -1)
 		}
 	}
 	px, py := f.powers(x, needed), f.powers(y, atY)
 	results := make([]int, len(orders))
 	for k, o := range orders {
-		var totals [2]int // two chains, since one would wait for itself
-		totals[0], totals[1] = -1, -1
-		for g, i := range atX {
+		var t totals
+		for _, i := range atX {
 			weight := falling(i, o.x)
-			if weight == 0 {
-				continue
-			}
 			inner := f.inner(terms, i, o.y, least.y, py)
-			if inner < 0 {
+			if weight == 0 || inner < 0 {
 				continue
 			}
-			which := &totals[g%2]
-			power := -1
-			if n := i - least.x; n != 0 {
-				power = px.at(n)
-			}
-			if weight != 1 {
-				if power >= 0 {
-					power = f.scaled(weight, power)
-				} else {
-					power = f.constant(weight)
-				}
-			}
-			switch {
-			case power < 0 && *which < 0:
-				*which = inner
-			case power < 0:
-				*which = f.add(*which, inner)
-			case *which < 0:
-				*which = f.multiply(power, inner)
+			switch n := i - least.x; {
+			case n != 0 && weight != 1:
+				t.weighted(f, f.scaled(weight, px.at(n)), inner)
+			case n != 0:
+				t.weighted(f, px.at(n), inner)
+			case weight != 1:
+				t.weighted(f, f.constant(weight), inner)
 			default:
-				*which = f.fused(power, inner, *which)
+				t.add(f, inner)
 			}
 		}
-		total := totals[0]
-		switch {
-		case total < 0:
-			total = totals[1]
-		case totals[1] >= 0:
-			total = f.add(total, totals[1])
-		}
+		total := t.whole(f)
 		if total < 0 {
 			panic(fmt.Sprintf("a derivative of order %v is 0 throughout", o))
 		}
-		for range o.x - least.x {
-			total = f.multiply(total, px.at(-1))
-		}
-		for range o.y - least.y {
-			total = f.multiply(total, py.at(-1))
+		if divide {
+			for range o.x - least.x {
+				total = f.multiply(total, px.at(-1))
+			}
+			for range o.y - least.y {
+				total = f.multiply(total, py.at(-1))
+			}
 		}
 		results[k] = total
 	}
@@ -216,23 +228,55 @@ func (f *formula) sum(terms []release.Term, x, y int, orders ...order) []int {
 
 // inner adds up in y the terms with x^i; -1 if all of them vanish.
 func (f *formula) inner(terms []release.Term, i, orderY, leastY int, py *powers) int {
-	total := -1
+	var t totals
 	for _, c := range terms {
 		weight := c.N * falling(c.J, orderY)
 		if c.I != i || weight == 0 {
 			continue
 		}
-		n := c.J - leastY
-		switch {
-		case n == 0 && total < 0:
-			total = f.constant(weight)
-		case n == 0:
-			total = f.add(total, f.constant(weight))
-		case total < 0:
-			total = f.scaled(weight, py.at(n))
-		default:
-			total = f.fused(f.constant(weight), py.at(n), total)
+		if n := c.J - leastY; n == 0 {
+			t.add(f, f.constant(weight))
+		} else {
+			t.weighted(f, f.constant(weight), py.at(n))
 		}
+	}
+	return t.whole(f)
+}
+
+// totals adds up in two chains in turn, since one would wait for itself.
+type totals struct {
+	chains []int
+	next   int
+}
+
+const chains = 2
+
+func (t *totals) weighted(f *formula, a, b int) {
+	if len(t.chains) < chains {
+		t.chains = append(t.chains, f.multiply(a, b))
+		return
+	}
+	t.chains[t.next] = f.weighted(a, b, t.chains[t.next])
+	t.next = (t.next + 1) % chains
+}
+
+func (t *totals) add(f *formula, a int) {
+	if len(t.chains) < chains {
+		t.chains = append(t.chains, a)
+		return
+	}
+	t.chains[t.next] = f.add(t.chains[t.next], a)
+	t.next = (t.next + 1) % chains
+}
+
+// whole is the sum of the chains; -1 if nothing was added.
+func (t *totals) whole(f *formula) int {
+	if len(t.chains) == 0 {
+		return -1
+	}
+	total := t.chains[0]
+	for _, c := range t.chains[1:] {
+		total = f.add(total, c)
 	}
 	return total
 }

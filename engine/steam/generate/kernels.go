@@ -25,16 +25,18 @@ const (
 var (
 	value = order{0, 0}
 	x, xx = order{1, 0}, order{2, 0}
+	xxx   = order{3, 0}
 	y, yy = order{0, 1}, order{0, 2}
 	xy    = order{1, 1}
 )
 
 // kernels lists what is generated.
 func kernels() []kernel {
-	list := gibbsKernels("1", "IAPWS R7-97(2012) Eq. 7", temperature1, region1)
-	list = append(list, gibbsKernels("2", "IAPWS R7-97(2012) Eqs. 15 to 17", temperature2, region2)...)
-	list = append(list, gibbsKernels("5", "IAPWS R7-97(2012) Eqs. 32 to 34", temperature5, region5)...)
-	list = append(list, helmholtzKernels()...)
+	var list []kernel
+	for _, r := range regions {
+		list = append(list, r.kernels()...)
+	}
+	list = append(list, region3()...)
 	for _, b := range []struct {
 		name, doc string
 		equation  release.Backward
@@ -66,129 +68,180 @@ func kernels() []kernel {
 	)
 }
 
-// gibbs makes, in a formula, derivatives by pi and tau of the dimensionless
-// Gibbs energy of one region, without the logarithm of pi.
-type gibbs func(f *formula, p, t int, orders ...order) (pi, tau int, derivatives []int)
+// region is a region whose equation is one of the Gibbs energy.
+type region struct {
+	name, source    string
+	pressure, star  float64 // reducing constants
+	shiftX, shiftY  float64 // of the bases shiftX -+ pi and tau - shiftY
+	residual, ideal []release.Term
+}
 
-func region1(f *formula, p, t int, orders ...order) (pi, tau int, derivatives []int) {
-	pi = f.scaled(1/pressure1, p)
-	tau = f.divide(f.constant(temperature1), t)
-	sums := f.sum(release.Region1, f.subtract(f.constant(7.1), pi), f.subtract(tau, f.constant(1.222)), orders...)
-	for i, o := range orders {
-		if o.x == 1 { // the base falls as pi rises
-			sums[i] = f.scaled(-1, sums[i])
-		}
+var regions = []region{
+	{name: "1", source: "IAPWS R7-97(2012) Eq. 7", pressure: pressure1, star: temperature1, shiftX: 7.1, shiftY: 1.222, residual: release.Region1},
+	{name: "2", source: "IAPWS R7-97(2012) Eqs. 15 to 17", pressure: pressure2, star: temperature2, shiftY: 0.5, residual: release.Region2Residual, ideal: release.Region2Ideal},
+	{name: "5", source: "IAPWS R7-97(2012) Eqs. 32 to 34", pressure: pressure5, star: temperature5, residual: release.Region5Residual, ideal: release.Region5Ideal},
+}
+
+// bases returns the two bases of the residual part, tau, and what turns a
+// derivative reduced by the bases into one reduced by pi and tau; -1 for 1.
+func (r region) bases(f *formula, p, t int) (x, y, tau, byX, byY int) {
+	x, tau = f.scaled(1/r.pressure, p), f.divide(f.constant(r.star), t)
+	y, byX, byY = tau, -1, -1
+	if r.shiftX != 0 {
+		pi := x
+		x = f.subtract(f.constant(r.shiftX), pi)
+		byX = f.divide(f.scaled(-1, pi), x)
 	}
-	return pi, tau, sums
+	if r.shiftY != 0 {
+		y = f.subtract(tau, f.constant(r.shiftY))
+		rest := f.subtract(f.constant(r.star), f.scaled(r.shiftY, t)) // y t
+		f.reciprocals[y] = f.divide(t, rest)
+		byY = f.divide(f.constant(r.star), rest)
+	}
+	f.reciprocals[tau] = f.scaled(1/r.star, t)
+	return x, y, tau, byX, byY
 }
 
-func region2(f *formula, p, t int, orders ...order) (pi, tau int, derivatives []int) {
-	pi = f.scaled(1/pressure2, p)
-	tau = f.divide(f.constant(temperature2), t)
-	return pi, tau, withIdeal(f, release.Region2Ideal, release.Region2Residual, pi, tau, f.subtract(tau, f.constant(0.5)), orders)
+// byTau is the derivative of the whole Gibbs energy by tau.
+func (r region) byTau(f *formula, p, t int) int {
+	x, y, tau, _, _ := r.bases(f, p, t)
+	total := f.sum(r.residual, x, y, order{0, 1})[0]
+	if r.ideal != nil {
+		total = f.add(total, f.sum(r.ideal, tau, tau, order{0, 1})[0])
+	}
+	return total
 }
 
-func region5(f *formula, p, t int, orders ...order) (pi, tau int, derivatives []int) {
-	pi = f.scaled(1/pressure5, p)
-	tau = f.divide(f.constant(temperature5), t)
-	return pi, tau, withIdeal(f, release.Region5Ideal, release.Region5Residual, pi, tau, tau, orders)
-}
-
-// withIdeal adds the ideal part, which knows no pi, to the residual part.
-func withIdeal(f *formula, ideal, residual []release.Term, pi, tau, shifted int, orders []order) []int {
-	sums := f.sum(residual, pi, shifted, orders...)
+// reduced are derivatives of the Gibbs energy, times pi and tau as often as it
+// is derived by them. ln pi, the ideal part's own, is in all but the value.
+func (r region) reduced(f *formula, p, t int, orders ...order) []int {
+	x, y, tau, byX, byY := r.bases(f, p, t)
+	sums := f.reduced(r.residual, x, y, orders...)
 	var inTau []order
-	for _, o := range orders {
+	for i, o := range orders {
+		for range o.x {
+			if byX >= 0 {
+				sums[i] = f.multiply(sums[i], byX)
+			}
+		}
+		for range o.y {
+			if byY >= 0 {
+				sums[i] = f.multiply(sums[i], byY)
+			}
+		}
 		if o.x == 0 {
 			inTau = append(inTau, o)
 		}
 	}
-	if len(inTau) == 0 {
+	if r.ideal == nil {
 		return sums
 	}
-	parts := f.sum(ideal, tau, tau, inTau...)
+	parts := map[order]int{{1, 0}: f.constant(1), {2, 0}: f.constant(-1)} // of ln pi
+	if len(inTau) > 0 {
+		for i, part := range f.reduced(r.ideal, tau, tau, inTau...) {
+			parts[inTau[i]] = part
+		}
+	}
 	for i, o := range orders {
-		if o.x == 0 {
-			sums[i] = f.add(sums[i], parts[0])
-			parts = parts[1:]
+		if part, ok := parts[o]; ok {
+			sums[i] = f.add(sums[i], part)
 		}
 	}
 	return sums
 }
 
-func gibbsKernels(region, source string, star float64, derivatives gibbs) []kernel {
-	in := []string{"p", "t"}
+// kernels are the functions of one region.
+func (r region) kernels() []kernel {
+	var list []kernel
 	begin := func() (f *formula, p, t int) {
 		f = newFormula()
 		return f, f.input("p"), f.input("t")
 	}
-	// h = R T tau gamma_tau and cp = -R tau^2 gamma_tautau.
-	enthalpy := func(f *formula, byTau int) int { return f.scaled(gas*star, byTau) }
-	heat := func(f *formula, tau, byTauTau int) int {
-		return f.multiply(f.scaled(-gas, f.multiply(tau, tau)), byTauTau)
+	at, besides := " at p in Pa and t in K: "+r.source, ""
+	if r.ideal != nil {
+		besides = ", without the logarithm of pi,"
 	}
-	logarithm := ""
-	if region != "1" {
-		logarithm = ", without the logarithm of the pressure"
+	put := func(name, doc string, f *formula, lanes bool, results ...string) {
+		list = append(list, kernel{"region" + r.name + name, "returns " + doc + at, []string{"p", "t"}, results, f, lanes})
 	}
-	var list []kernel
+
 	f, p, t := begin()
-	_, _, d := derivatives(f, p, t, y)
-	f.results = []int{enthalpy(f, d[0])}
-	list = append(list, kernel{"region" + region + "Enthalpy", "returns h in J/kg at p in Pa and t in K: " + source, in, []string{"h"}, f, region != "5"})
+	f.results = []int{f.scaled(gas*r.star, r.byTau(f, p, t))} // h = R T tau gamma_tau
+	put("Enthalpy", "h in J/kg", f, r.name != "5", "h")
 
 	f, p, t = begin()
-	_, tau, d := derivatives(f, p, t, y, yy)
-	f.results = []int{enthalpy(f, d[0]), heat(f, tau, d[1])}
-	list = append(list, kernel{"region" + region + "EnthalpyHeat", "returns h in J/kg and cp in J/(kg K) at p in Pa and t in K: " + source, in, []string{"h", "cp"}, f, false})
+	d := r.reduced(f, p, t, y, yy)
+	f.results = []int{f.scaled(gas, f.multiply(t, d[0])), f.scaled(-gas, d[1])}
+	put("EnthalpyHeat", "h in J/kg and cp in J/(kg K)", f, false, "h", "cp")
 
 	f, p, t = begin()
-	_, tau, d = derivatives(f, p, t, value, y, yy)
-	f.results = []int{f.scaled(gas, f.subtract(f.multiply(tau, d[1]), d[0])), heat(f, tau, d[2])}
-	list = append(list, kernel{"region" + region + "EntropyHeat", "returns s in J/(kg K)" + logarithm + ", and cp in J/(kg K) at p in Pa and t in K: " + source, in, []string{"s", "cp"}, f, false})
+	d = r.reduced(f, p, t, value, y, yy)
+	f.results = []int{f.scaled(gas, f.subtract(d[1], d[0])), f.scaled(-gas, d[2])}
+	put("EntropyHeat", "s"+besides+" in J/(kg K) and cp in J/(kg K)", f, false, "s", "cp")
 
 	f, p, t = begin()
-	_, _, d = derivatives(f, p, t, x)
-	if region == "1" { // v = R T/p pi gamma_pi
-		f.results = []int{f.multiply(f.scaled(gas/pressure1, t), d[0])}
-	} else { // whose ideal part is R T/p
-		f.results = []int{f.scaled(gas, f.multiply(t, f.fused(f.constant(1/pressure2), d[0], f.divide(f.constant(1), p))))}
-	}
-	list = append(list, kernel{"region" + region + "Volume", "returns v in m3/kg at p in Pa and t in K: " + source, in, []string{"v"}, f, false})
+	f.results = []int{f.divide(f.scaled(gas, f.multiply(t, r.reduced(f, p, t, x)[0])), p)} // v = R T/p pi gamma_pi
+	put("Volume", "v in m3/kg", f, false, "v")
 
 	f, p, t = begin()
-	_, _, d = derivatives(f, p, t, value, x, xx, y, yy, xy)
-	f.results = d
-	part := "the dimensionless Gibbs energy"
-	if region != "1" {
-		part += ", without the logarithm of pi,"
-	}
-	list = append(list, kernel{"region" + region + "Gibbs", "returns " + part + " and its derivatives at p in Pa and t in K: " + source, in, []string{"value", "byPi", "byPiPi", "byTau", "byTauTau", "byPiTau"}, f, false})
+	f.results = r.reduced(f, p, t, x, xx, yy, xy)
+	put("Response", "derivatives of the Gibbs energy over R T, times pi and tau as often as derived by them,", f, false, "byPi", "byPiPi", "byTauTau", "byPiTau")
+
+	f, p, t = begin()
+	f.results = r.reduced(f, p, t, value, x, xx, y, yy, xy)
+	put("Gibbs", "the Gibbs energy over R T"+besides+" and derivatives, times pi and tau as often as derived by them,", f, false, "value", "byPi", "byPiPi", "byTau", "byTauTau", "byPiTau")
 	return list
 }
 
-func helmholtzKernels() []kernel {
-	in := []string{"rho", "t"}
+// region3 are the functions of region 3, whose equation is one of the Helmholtz
+// energy. All its derivatives are taken times delta and tau as often as derived
+// by them; its term in ln delta is left out, since only the value needs a
+// logarithm for it.
+func region3() []kernel {
+	var list []kernel
 	begin := func() (f *formula, rho, t, delta, tau int) {
 		f = newFormula()
 		rho, t = f.input("rho"), f.input("t")
 		return f, rho, t, f.scaled(1/density3, rho), f.divide(f.constant(temperature3), t)
 	}
-	// p = rho R T delta phi_delta; ln delta adds n1 to delta phi_delta.
-	f, rho, t, delta, tau := begin()
-	d := f.sum(release.Region3, delta, tau, x, xx)
-	first := f.fused(delta, d[0], f.constant(release.Region3Log))
-	second := f.fused(f.multiply(delta, delta), d[1], f.constant(-release.Region3Log))
-	rt := f.scaled(gas, t)
-	f.results = []int{
-		f.multiply(f.multiply(rho, rt), first),
-		f.multiply(rt, f.fused(f.constant(2), first, second)),
+	put := func(name, doc string, f *formula, results ...string) {
+		list = append(list, kernel{"region3" + name, "returns " + doc + " at rho in kg/m3 and t in K: IAPWS R7-97(2012) Eq. 28", []string{"rho", "t"}, results, f, false})
 	}
-	list := []kernel{{"region3Pressure", "returns p in Pa and its derivative by density in Pa m3/kg at rho in kg/m3 and t in K: IAPWS R7-97(2012) Eq. 28", in, []string{"p", "byDensity"}, f, false}}
+	// p = rho R T F with F = delta phi_delta, and delta F' = F + delta^2 phi_deltadelta,
+	// delta^2 F'' = 2 delta^2 phi_deltadelta + delta^3 phi_deltadeltadelta.
+	curve := func(f *formula, rho, t, delta, tau int, orders ...order) {
+		d := f.reduced(release.Region3, delta, tau, orders...)
+		first := f.add(d[0], f.constant(release.Region3Log))
+		second := f.add(d[1], f.constant(-release.Region3Log))
+		rt := f.scaled(gas, t)
+		rise := f.add(first, second)
+		f.results = []int{f.multiply(f.multiply(rho, rt), first), f.multiply(rt, f.add(first, rise))}
+		if len(d) > 2 {
+			third := f.add(d[2], f.constant(2*release.Region3Log))
+			f.results = append(f.results, f.multiply(rt, f.add(f.weighted(f.constant(2), rise, f.scaled(2, second)), third)))
+		}
+	}
+	f, rho, t, delta, tau := begin()
+	curve(f, rho, t, delta, tau, x, xx)
+	put("Pressure", "p in Pa and its derivative by density in Pa m3/kg", f, "p", "byDensity")
+
+	f, rho, t, delta, tau = begin()
+	curve(f, rho, t, delta, tau, x, xx, xxx)
+	put("PressureCurve", "p in Pa, its derivative by density in Pa m3/kg, and density times the next derivative,", f, "p", "byDensity", "bend")
+
+	const reduced = "derivatives of the Helmholtz energy over R T without its term in ln delta, times delta and tau as often as derived by them,"
+	f, _, _, delta, tau = begin()
+	f.results = f.reduced(release.Region3, delta, tau, x, xx, yy, xy)
+	put("Response", reduced, f, "byDelta", "byDeltaDelta", "byTauTau", "byDeltaTau")
 
 	f, _, _, delta, tau = begin()
-	f.results = f.sum(release.Region3, delta, tau, value, x, xx, y, yy, xy)
-	return append(list, kernel{"region3Helmholtz", "returns the dimensionless Helmholtz energy, without its term in ln delta, and its derivatives at rho in kg/m3 and t in K: IAPWS R7-97(2012) Eq. 28", in, []string{"value", "byDelta", "byDeltaDelta", "byTau", "byTauTau", "byDeltaTau"}, f, false})
+	f.results = f.reduced(release.Region3, delta, tau, x, xx, y, yy, xy)
+	put("Slopes", reduced, f, "byDelta", "byDeltaDelta", "byTau", "byTauTau", "byDeltaTau")
+
+	f, _, _, delta, tau = begin()
+	f.results = f.reduced(release.Region3, delta, tau, value, x, xx, y, yy, xy)
+	put("Helmholtz", "the Helmholtz energy over R T and its derivatives, as region3Slopes does,", f, "value", "byDelta", "byDeltaDelta", "byTau", "byTauTau", "byDeltaTau")
+	return list
 }
 
 func backward(name, doc string, b release.Backward) kernel {
@@ -196,9 +249,9 @@ func backward(name, doc string, b release.Backward) kernel {
 	p, c := f.input("p"), f.input("c")
 	first := p
 	if b.Roots == 0 {
-		first = f.fused(f.constant(1e-6/b.Pressure), p, f.constant(b.PressureShift))
+		first = f.weighted(f.constant(1e-6/b.Pressure), p, f.constant(b.PressureShift))
 	}
-	second := f.fused(f.constant(1e-3/b.Coordinate), c, f.constant(b.CoordinateShift))
+	second := f.weighted(f.constant(1e-3/b.Coordinate), c, f.constant(b.CoordinateShift))
 	total := f.sum(b.Terms, first, second, value)[0]
 	if b.Scale != 1 {
 		total = f.scaled(b.Scale, total)
@@ -216,7 +269,7 @@ func series(name, doc string, coefficients []float64) kernel {
 	at := f.input("at")
 	total := f.constant(coefficients[len(coefficients)-1])
 	for i := len(coefficients) - 2; i >= 0; i-- {
-		total = f.fused(total, at, f.constant(coefficients[i]))
+		total = f.weighted(total, at, f.constant(coefficients[i]))
 	}
 	f.results = []int{total}
 	return kernel{name, "is " + doc, []string{"at"}, []string{"sum"}, f, false}

@@ -44,13 +44,27 @@ func startTable(code *bytes.Buffer) {
 				if !dense {
 					width = min(boundary23(t)-line, -narrow)
 				}
-				fmt.Fprintf(code, "%.5g,", density(line+width*root*root, t, dense))
+				fmt.Fprintf(code, "%.7g,", density(line+width*root*root, t, dense))
 			}
 			code.WriteString("},\n")
 		}
 		code.WriteString("},\n")
 	}
 	code.WriteString("}\n")
+}
+
+// linePressures are the pressures of the saturation line at every kelvin, by
+// which most states are told liquid or vapour without Eq. 30.
+func linePressures(code *bytes.Buffer) {
+	const coldest, kelvins = 273.15, 350
+	fmt.Fprintf(code, "\n// linePressure is Eq. 30 of IAPWS R7-97(2012) in Pa at 273.15 K and every kelvin from there.\nvar linePressure = [%d]float64{", kelvins+1)
+	for i := range kelvins + 1 {
+		if i%8 == 0 {
+			code.WriteString("\n")
+		}
+		fmt.Fprintf(code, "%s, ", number(linePressure(coldest+float64(i))))
+	}
+	code.WriteString("\n}\n")
 }
 
 // linePressure is Eq. 30 of IAPWS R7-97(2012) and, above the critical
