@@ -20,15 +20,16 @@ var layers = map[string]struct {
 	may    []string
 	reason string
 }{
-	"engine":          {nil, "a version needs nothing"},
-	"engine/quantity": {nil, "units stand below everything"},
-	"engine/fault":    {nil, "faults stand below everything"},
-	"engine/evidence": {nil, "what a result says of itself stands below everything"},
-	"engine/numeric":  {nil, "mathematics knows no plant"},
-	"engine/steam":    {[]string{"quantity", "fault", "evidence", "numeric"}, "steam knows no liquor"},
-	"engine/liquor":   {[]string{"quantity", "fault", "evidence", "numeric", "steam"}, "a liquor knows no plant"},
-	"engine/train":    {[]string{"quantity", "fault", "evidence", "numeric", "steam", "liquor"}, "a plant knows no rating and no message"},
-	"engine/vetting":  {[]string{"quantity", "fault", "evidence", "numeric", "steam", "liquor", "train"}, "vetting checks all of it"},
+	"engine":               {nil, "a version needs nothing"},
+	"engine/quantity":      {nil, "units stand below everything"},
+	"engine/fault":         {nil, "faults stand below everything"},
+	"engine/evidence":      {nil, "what a result says of itself stands below everything"},
+	"engine/numeric":       {nil, "mathematics knows no plant"},
+	"engine/steam":         {[]string{"quantity", "fault", "evidence", "numeric", "steam/release"}, "steam knows no liquor"},
+	"engine/steam/release": {nil, "a printed table needs nothing"},
+	"engine/liquor":        {[]string{"quantity", "fault", "evidence", "numeric", "steam"}, "a liquor knows no plant"},
+	"engine/train":         {[]string{"quantity", "fault", "evidence", "numeric", "steam", "liquor"}, "a plant knows no rating and no message"},
+	"engine/vetting":       {[]string{"quantity", "fault", "evidence", "numeric", "steam", "steam/release", "liquor", "train"}, "vetting checks all of it"},
 }
 
 // standard lists what the engine may see of the standard library: nothing
@@ -100,6 +101,9 @@ func TestEngineIsPure(t *testing.T) {
 	for _, f := range goFiles(t, set) {
 		if f.test || f.folder != "engine" && !strings.HasPrefix(f.folder, "engine/") {
 			continue
+		}
+		if f.syntax.Name.Name == "main" {
+			continue // a command that writes code is no part of the engine
 		}
 		seen[f.folder] = true
 		layer, ok := layers[f.folder]

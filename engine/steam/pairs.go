@@ -5,6 +5,7 @@ import (
 
 	"calandria.example/calandria/engine/fault"
 	"calandria.example/calandria/engine/quantity"
+	"calandria.example/calandria/engine/steam/release"
 )
 
 // AtPressureEnthalpy returns the state with h at p, over the range of
@@ -158,8 +159,7 @@ func vapourStart(p, h float64) float64 {
 	if p <= 4e6 {
 		return backwardTemperature2aByEnthalpy(p, h)
 	}
-	eta := h * 1e-3
-	if p*1e-6 <= 905.84278514723-0.67955786399241*eta+1.2809002730136e-4*eta*eta {
+	if p*1e-6 <= release.Boundary2bc(h*1e-3) {
 		return backwardTemperature2bByEnthalpy(p, h)
 	}
 	return backwardTemperature2cByEnthalpy(p, h)
@@ -185,8 +185,7 @@ func vapourStartByEntropy(p, s float64) float64 {
 
 // denseStart picks between regions 3a and 3b of IAPWS SR3-03(2014) by its Eq. 1.
 func denseStart(p, h float64) (rho, t float64) {
-	pi := p * 1e-6
-	if h*1e-3 <= 0.201464004206875e4+pi*(0.374696550136983e1+pi*(-0.219921901054187e-1+pi*0.875131686009950e-4)) {
+	if h*1e-3 <= release.Boundary3ab(p*1e-6) {
 		return 1 / backwardVolume3aByEnthalpy(p, h), backwardTemperature3aByEnthalpy(p, h)
 	}
 	return 1 / backwardVolume3bByEnthalpy(p, h), backwardTemperature3bByEnthalpy(p, h)

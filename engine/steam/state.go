@@ -8,6 +8,7 @@ package steam
 
 import (
 	"fmt"
+	"math"
 
 	"calandria.example/calandria/engine/evidence"
 	"calandria.example/calandria/engine/fault"
@@ -204,4 +205,70 @@ func onTheLine(p, t float64) error {
 
 func unfound(residual float64) error {
 	return &fault.NotConverged{Iterations: mostSteps, Residual: residual, Where: "density of region 3"}
+}
+
+// AtDensityTemperature returns the state of region 3 at a density in kg/m3 and
+// t, for those who know the density: the equation's own inputs. Elsewhere than
+// in region 3 it refuses with *fault.Range, between the saturated phases too.
+func AtDensityTemperature(rho float64, t quantity.Temperature) (State, error) {
+	if !(t >= regionsEnd && t <= hottest3) {
+		return State{}, outsideBy("temperature", "K", "IAPWS R7-97(2012) region 3", float64(t), regionsEnd, hottest3)
+	}
+	if !(rho >= thinnest && rho <= densest) {
+		return State{}, outsideBy("density", "kg/m3", "IAPWS R7-97(2012) region 3", rho, thinnest, densest)
+	}
+	if t < critical {
+		line := saturationPressure(float64(t))
+		if liquid, vapour := saturatedDensities(line, float64(t)); rho < liquid && rho > vapour {
+			return State{}, outsideBy("density", "kg/m3", "IAPWS R7-97(2012) region 3, thinner than liquid", rho, liquid, densest)
+		}
+	}
+	s := State{Temperature: t}
+	p := region3(rho, float64(t)).p
+	if low := boundary23(float64(t)); !(p >= low && p <= highestPressure) {
+		return State{}, outsideBy("pressure", "Pa", "IAPWS R7-97(2012) region 3", p, low, highestPressure)
+	}
+	s.Pressure = quantity.Pressure(p)
+	fill3(&s, rho, float64(t))
+	s.Phase = phaseOf(p, float64(t), rho > criticalDensity)
+	return s, nil
+}
+
+// MetastableVapour returns the state of vapour that has not begun to condense
+// below its condensing temperature, as in a nozzle: IAPWS R7-97(2012) Eqs. 18
+// and 19, from the saturation line down to where equilibrium would have 5 % of
+// moisture, 611.2 Pa to 10 MPa.
+func MetastableVapour(p quantity.Pressure, t quantity.Temperature) (State, error) {
+	const highest, driest = 10e6, 0.95
+	const source = "IAPWS R7-97(2012) section 6.2"
+	if low := lineStart(); !(float64(p) >= low && p <= highest) {
+		return State{}, outsideBy("pressure", "Pa", source, float64(p), low, highest)
+	}
+	liquid, vapour, err := SaturationAtPressure(p)
+	if err != nil {
+		return State{}, err
+	}
+	if !(t >= coldest && t <= vapour.Temperature) {
+		return State{}, outsideBy("temperature", "K", source, float64(t), coldest, float64(vapour.Temperature))
+	}
+	var g gibbs
+	g.value, g.byPi, g.byPiPi, g.byTau, g.byTauTau, g.byPiTau = regionMetastableGibbs(float64(p), float64(t))
+	g.value += math.Log(float64(p) * 1e-6)
+	s := State{Region: 2, Phase: SuperheatedVapour, Pressure: p, Temperature: t}
+	g.fill(&s, float64(p), float64(t))
+	if least := liquid.Enthalpy + driest*(vapour.Enthalpy-liquid.Enthalpy); s.Enthalpy < least {
+		return State{}, outsideBy("enthalpy", "J/kg", source, s.Enthalpy, least, vapour.Enthalpy)
+	}
+	return s, nil
+}
+
+// Boundary23Pressure returns the pressure that divides region 2 from region 3 at
+// t: IAPWS R7-97(2012) Eq. 5, 623.15 K to 863.15 K.
+func Boundary23Pressure(t quantity.Temperature) quantity.Pressure {
+	return quantity.Pressure(boundary23(float64(t)))
+}
+
+// Boundary23Temperature inverts Boundary23Pressure: 16.5292 MPa to 100 MPa.
+func Boundary23Temperature(p quantity.Pressure) quantity.Temperature {
+	return quantity.Temperature(boundary23Temperature(float64(p)))
 }

@@ -111,11 +111,49 @@ func conductivity3(rho, t float64) (float64, error) {
 	return conductivity(rho, t, cv+gasConstant*mixed*mixed/stiffness, cv, 1/(gasConstant*t*stiffness)), nil
 }
 
+// ViscosityAtDensity returns the dynamic viscosity in Pa s at a density in kg/m3
+// and t: IAPWS R12-08 without critical enhancement, up to 1173.15 K and, as the
+// release's own tables go, 1200 kg/m3.
+func ViscosityAtDensity(rho float64, t quantity.Temperature) (float64, error) {
+	if err := insideTransport(rho, t, "IAPWS R12-08"); err != nil {
+		return 0, err
+	}
+	return viscosity(rho, float64(t)), nil
+}
+
+// BackgroundConductivity returns the thermal conductivity in W/(m K) at a
+// density in kg/m3 and t without its critical enhancement, which takes a state:
+// IAPWS R15-11 Eqs. 16 and 17, up to 1173.15 K and 1200 kg/m3.
+func BackgroundConductivity(rho float64, t quantity.Temperature) (float64, error) {
+	if err := insideTransport(rho, t, "IAPWS R15-11"); err != nil {
+		return 0, err
+	}
+	return background(rho, float64(t)), nil
+}
+
+func insideTransport(rho float64, t quantity.Temperature, source string) error {
+	const heaviest = 1200.0
+	if !(t >= coldest && t <= hottestTransport) {
+		return outsideTransport(t, source)
+	}
+	if !(rho >= 0 && rho <= heaviest) {
+		return outsideBy("density", "kg/m3", source, rho, 0, heaviest)
+	}
+	return nil
+}
+
 // viscosity is IAPWS R12-08 Eqs. 10 to 12 with mu2 = 1.
 func viscosity(rho, t float64) float64 {
 	inverse, delta := critical/t, rho/criticalDensity
 	mu0 := 100e-6 / (math.Sqrt(inverse) * viscosity0(inverse))
 	return mu0 * math.Exp(delta*viscosity1(inverse-1, delta-1))
+}
+
+// background is IAPWS R15-11 Eqs. 16 and 17.
+func background(rho, t float64) float64 {
+	inverse, delta := critical/t, rho/criticalDensity
+	lambda0 := 1e-3 / (math.Sqrt(inverse) * conductivity0(inverse))
+	return lambda0 * math.Exp(delta*conductivity1(inverse-1, delta-1))
 }
 
 // conductivity is IAPWS R15-11 Eqs. 15 to 25, with cp and cv in J/(kg K) and
@@ -133,8 +171,7 @@ func conductivity(rho, t, cp, cv, byPressure float64) float64 {
 		smallest     = 1.2e-7        // of y, below which the enhancement vanishes
 	)
 	inverse, delta := critical/t, rho/criticalDensity
-	lambda0 := 1e-3 / (math.Sqrt(inverse) * conductivity0(inverse))
-	lambda := lambda0 * math.Exp(delta*conductivity1(inverse-1, delta-1))
+	lambda := background(rho, t)
 	zeta := byPressure * pressureUnit / criticalDensity
 	excess := delta * (zeta - referenceCompressibility(delta)*reference*inverse)
 	if excess <= 0 {

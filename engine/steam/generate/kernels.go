@@ -36,6 +36,8 @@ func kernels() []kernel {
 	for _, r := range regions {
 		list = append(list, r.kernels()...)
 	}
+	metastable := region{name: "Metastable", source: "IAPWS R7-97(2012) Eqs. 18 and 19", pressure: pressure2, star: temperature2, shiftY: 0.5, residual: release.MetastableResidual, ideal: release.MetastableIdeal}
+	list = append(list, metastable.gibbs())
 	list = append(list, region3()...)
 	for _, b := range []struct {
 		name, doc string
@@ -187,10 +189,22 @@ func (r region) kernels() []kernel {
 	f.results = r.reduced(f, p, t, x, xx, yy, xy)
 	put("Response", "derivatives of the Gibbs energy over R T, times pi and tau as often as derived by them,", f, false, "byPi", "byPiPi", "byTauTau", "byPiTau")
 
-	f, p, t = begin()
-	f.results = r.reduced(f, p, t, value, x, xx, y, yy, xy)
-	put("Gibbs", "the Gibbs energy over R T"+besides+" and derivatives, times pi and tau as often as derived by them,", f, false, "value", "byPi", "byPiPi", "byTau", "byTauTau", "byPiTau")
-	return list
+	return append(list, r.gibbs())
+}
+
+// gibbs is the function of the whole Gibbs energy.
+func (r region) gibbs() kernel {
+	f := newFormula()
+	f.results = r.reduced(f, f.input("p"), f.input("t"), value, x, xx, y, yy, xy)
+	besides := ""
+	if r.ideal != nil {
+		besides = ", without the logarithm of pi,"
+	}
+	return kernel{
+		"region" + r.name + "Gibbs",
+		"returns the Gibbs energy over R T" + besides + " and derivatives, times pi and tau as often as derived by them, at p in Pa and t in K: " + r.source,
+		[]string{"p", "t"}, []string{"value", "byPi", "byPiPi", "byTau", "byTauTau", "byPiTau"}, f, false,
+	}
 }
 
 // region3 are the functions of region 3, whose equation is one of the Helmholtz

@@ -83,3 +83,15 @@ var Saturation = [10]float64{
 // Boundary23 is n1 to n3 of Table 1 of IAPWS R7-97(2012): Eq. 5, the pressure in
 // MPa that divides region 2 from region 3.
 var Boundary23 = [3]float64{0.34805185628969e3, -0.11671859879975e1, 0.10192970039326e-2}
+
+// Boundary2bc is Eq. 20 of IAPWS R7-97(2012): the pressure in MPa that divides
+// regions 2b and 2c of the backward equations at h in kJ/kg.
+func Boundary2bc(h float64) float64 {
+	return 905.84278514723 + h*(-0.67955786399241+h*1.2809002730136e-4)
+}
+
+// Boundary3ab is Eq. 1 of IAPWS SR3-03(2014): the enthalpy in kJ/kg that divides
+// regions 3a and 3b of the backward equations at p in MPa.
+func Boundary3ab(p float64) float64 {
+	return 0.201464004206875e4 + p*(0.374696550136983e1+p*(-0.219921901054187e-1+p*0.875131686009950e-4))
+}
