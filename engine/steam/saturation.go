@@ -227,7 +227,11 @@ func lineJoint() float64 { return saturationPressure(regionsEnd) }
 func lineTop() float64   { return saturationPressure(critical) }
 
 // onLineAt returns the temperature of the saturation line at p in Pa within the
-// line; rounding may lead a hair beyond its ends.
+// line; rounding may lead a hair beyond its ends, or not quite to the critical
+// point, where a hair is much.
 func onLineAt(p float64) float64 {
+	if p >= lineTop() {
+		return critical
+	}
 	return min(max(saturationTemperature(p), coldest), critical)
 }
