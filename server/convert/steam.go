@@ -2,7 +2,9 @@ package convert
 
 import (
 	"errors"
+	"strings"
 
+	"calandria.example/calandria/engine/evidence"
 	"calandria.example/calandria/engine/fault"
 	"calandria.example/calandria/engine/quantity"
 	"calandria.example/calandria/engine/steam"
@@ -22,29 +24,98 @@ const (
 	pressureField    = "pressure_kpa_abs"
 	temperatureField = "temperature_c"
 	drynessField     = "dryness_fraction"
+	enthalpyField    = "enthalpy_kj_per_kg"
+	entropyField     = "entropy_kj_per_kg_k"
 )
+
+// coordinates are the fields that a state can be asked by, in their order.
+var coordinates = []string{pressureField, temperatureField, drynessField, enthalpyField, entropyField}
+
+// pair is two coordinates that tell a state, first and second in their order,
+// and how.
+type pair struct {
+	first, second string
+	state         func(a, b float64) (steam.State, error)
+}
+
+var pairs = []pair{
+	{pressureField, temperatureField, func(p, t float64) (steam.State, error) {
+		return steam.AtPressureTemperature(quantity.Kilopascals(p), quantity.Celsius(t))
+	}},
+	{pressureField, drynessField, func(p, x float64) (steam.State, error) {
+		return steam.AtPressureDryness(quantity.Kilopascals(p), quantity.Fraction(x))
+	}},
+	{pressureField, enthalpyField, func(p, h float64) (steam.State, error) {
+		return steam.AtPressureEnthalpy(quantity.Kilopascals(p), quantity.KilojoulesPerKilogram(h))
+	}},
+	{pressureField, entropyField, func(p, s float64) (steam.State, error) {
+		return steam.AtPressureEntropy(quantity.Kilopascals(p), quantity.KilojoulesPerKilogramKelvin(s))
+	}},
+	{temperatureField, drynessField, func(t, x float64) (steam.State, error) {
+		return steam.AtTemperatureDryness(quantity.Celsius(t), quantity.Fraction(x))
+	}},
+	{enthalpyField, entropyField, func(h, s float64) (steam.State, error) {
+		return steam.AtEnthalpyEntropy(quantity.KilojoulesPerKilogram(h), quantity.KilojoulesPerKilogramKelvin(s))
+	}},
+}
 
 // SteamRequest computes the state that a request asks for.
 func SteamRequest(m *calandriav1.GetSteamStateRequest) (steam.State, error) {
-	var s steam.State
-	var err error
-	p, t, x := m.PressureKpaAbs, m.TemperatureC, m.DrynessFraction
-	given := present(map[string]*float64{pressureField: p, temperatureField: t, drynessField: x}, pressureField, temperatureField, drynessField)
-	switch {
-	case len(given) > 2:
-		return s, tooMany(given...)
-	case len(given) == 0:
-		return s, tooFew(2, pressureField, temperatureField, drynessField)
-	case len(given) == 1:
-		return s, tooFew(1, others(given[0])...)
-	case x == nil:
-		s, err = steam.AtPressureTemperature(quantity.Kilopascals(*p), quantity.Celsius(*t))
-	case p != nil:
-		s, err = steam.AtPressureDryness(quantity.Kilopascals(*p), quantity.Fraction(*x))
-	default:
-		s, err = steam.AtTemperatureDryness(quantity.Celsius(*t), quantity.Fraction(*x))
+	values := map[string]*float64{
+		pressureField: m.PressureKpaAbs, temperatureField: m.TemperatureC, drynessField: m.DrynessFraction,
+		enthalpyField: m.EnthalpyKjPerKg, entropyField: m.EntropyKjPerKgK,
 	}
-	return s, inFields(err)
+	chosen, err := pairOf(present(values, coordinates...))
+	if err != nil {
+		return steam.State{}, err
+	}
+	return chosen.at(*values[chosen.first], *values[chosen.second])
+}
+
+// at computes the state at two values.
+func (p pair) at(a, b float64) (steam.State, error) {
+	s, err := p.state(a, b)
+	if err != nil {
+		return s, inFields(err)
+	}
+	return s, nil
+}
+
+// pairOf finds the pair that the given fields are.
+func pairOf(given []string) (pair, error) {
+	switch len(given) {
+	case 0:
+		return pair{}, tooFew(2, coordinates...)
+	case 1:
+		return pair{}, tooFew(1, partners(given[0])...)
+	case 2:
+	default:
+		return pair{}, tooMany(given...)
+	}
+	var names []string
+	for _, p := range pairs {
+		if p.first == given[0] && p.second == given[1] {
+			return p, nil
+		}
+		names = append(names, p.first+" with "+p.second)
+	}
+	return pair{}, &fault.Invalid{
+		Field: given[1], Value: "given with " + given[0], Limit: strings.Join(names, "; "),
+		WayOut: "that pair may have no state or two: give one of the pairs that have one",
+	}
+}
+
+// partners are the coordinates that make a pair with one.
+func partners(given string) []string {
+	var names []string
+	for _, name := range coordinates {
+		for _, p := range pairs {
+			if p.first == given && p.second == name || p.second == given && p.first == name {
+				names = append(names, name)
+			}
+		}
+	}
+	return names
 }
 
 func tooMany(fields ...string) error {
@@ -65,16 +136,6 @@ func present(values map[string]*float64, order ...string) []string {
 	return names
 }
 
-func others(given string) []string {
-	var names []string
-	for _, name := range []string{pressureField, temperatureField, drynessField} {
-		if name != given {
-			names = append(names, name)
-		}
-	}
-	return names
-}
-
 // inFields names a steam fault's quantity by the field that it came from.
 func inFields(err error) error {
 	var outside *fault.Range
@@ -89,6 +150,10 @@ func inFields(err error) error {
 		named.Quantity = temperatureField
 	case "dryness":
 		named.Quantity = drynessField
+	case "enthalpy":
+		named.Quantity = enthalpyField
+	case "entropy":
+		named.Quantity = entropyField
 	}
 	return &named
 }
@@ -105,17 +170,30 @@ func SaturationRequest(m *calandriav1.GetSaturationRequest) (liquid, vapour stea
 		liquid, vapour, err = steam.Saturation(quantity.Celsius(*t))
 		return liquid, vapour, inFields(err)
 	}
-	if liquid, err = steam.AtPressureDryness(quantity.Kilopascals(*p), 0); err == nil {
-		vapour, err = steam.AtPressureDryness(quantity.Kilopascals(*p), 1)
-	}
+	liquid, vapour, err = steam.SaturationAtPressure(quantity.Kilopascals(*p))
 	return liquid, vapour, inFields(err)
 }
 
 // SteamState makes the answer for one state.
 func SteamState(s steam.State) *calandriav1.SteamState {
 	m := steamState(s)
-	m.Provenance = provenance(steam.Models())
+	m.Advisories = advisories(s.Advisories())
+	m.Provenance = provenance(steamModels(m.ViscosityPaS != nil, m.ConductivityWPerMK != nil, m.SurfaceTensionNPerM != nil))
 	return m
+}
+
+// SteamModels are all models of the steam properties.
+func SteamModels() []evidence.Model { return steamModels(true, true, true) }
+
+// steamModels are the models that an answer rests on, by what stands in it.
+func steamModels(viscosity, conductivity, tension bool) []evidence.Model {
+	list := steam.Models()
+	for i, used := range []bool{viscosity, conductivity, tension} {
+		if used {
+			list = append(list, steam.TransportModels()[i])
+		}
+	}
+	return list
 }
 
 func steamState(s steam.State) *calandriav1.SteamState {
@@ -133,6 +211,9 @@ func steamState(s steam.State) *calandriav1.SteamState {
 		SpecificHeatCpKjPerKgK: nil,
 		SpecificHeatCvKjPerKgK: nil,
 		SpeedOfSoundMPerS:      nil,
+		ViscosityPaS:           nil,
+		ConductivityWPerMK:     nil,
+		SurfaceTensionNPerM:    nil,
 		Advisories:             nil,
 		Provenance:             nil,
 	}
@@ -144,7 +225,17 @@ func steamState(s steam.State) *calandriav1.SteamState {
 		m.SpecificHeatCvKjPerKgK = pointer(s.Cv / 1e3)
 		m.SpeedOfSoundMPerS = pointer(s.SpeedOfSound)
 	}
+	m.ViscosityPaS = existing(s.Viscosity())
+	m.ConductivityWPerMK = existing(s.Conductivity())
+	m.SurfaceTensionNPerM = existing(s.SurfaceTension())
 	return m
+}
+
+func existing(v float64, exists bool) *float64 {
+	if !exists {
+		return nil
+	}
+	return &v
 }
 
 func pointer(v float64) *float64 { return &v }
@@ -158,6 +249,6 @@ func Saturation(liquid, vapour steam.State) *calandriav1.Saturation {
 		Vapour:            steamState(vapour),
 		LatentHeatKjPerKg: (vapour.Enthalpy - liquid.Enthalpy) / 1e3,
 		Advisories:        nil,
-		Provenance:        provenance(steam.Models()),
+		Provenance:        provenance(SteamModels()),
 	}
 }

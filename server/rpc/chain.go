@@ -23,7 +23,7 @@ import (
 // the answer.
 func Chain(log *slog.Logger, longest time.Duration, requestBytes int) ([]grpc.UnaryServerInterceptor, error) {
 	validator, err := protovalidate.New(
-		protovalidate.WithMessages(&calandriav1.GetSteamStateRequest{}, &calandriav1.GetSaturationRequest{}, &calandriav1.SolveEffectRequest{}),
+		protovalidate.WithMessages(&calandriav1.GetSteamStateRequest{}, &calandriav1.GetSaturationRequest{}, &calandriav1.ComputeSteamStatesRequest{}, &calandriav1.SolveEffectRequest{}),
 	)
 	if err != nil {
 		return nil, fmt.Errorf("rules of the protos: %w", err)

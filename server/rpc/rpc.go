@@ -7,7 +7,6 @@ import (
 
 	"google.golang.org/grpc"
 
-	"calandria.example/calandria/engine/steam"
 	"calandria.example/calandria/engine/train"
 	"calandria.example/calandria/engine/vetting"
 	calandriav1 "calandria.example/calandria/proto/calandria/v1"
@@ -69,7 +68,7 @@ func (s *Services) SolveEffect(_ context.Context, request *calandriav1.SolveEffe
 
 // GetEngine tells version, models and limits.
 func (s *Services) GetEngine(context.Context, *calandriav1.GetEngineRequest) (*calandriav1.Engine, error) {
-	return convert.Engine(steam.Models(), s.Limits), nil
+	return convert.Engine(convert.SteamModels(), s.Limits), nil
 }
 
 // VerifyEngine recomputes the published check values.

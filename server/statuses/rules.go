@@ -3,6 +3,7 @@ package statuses
 import (
 	"errors"
 	"fmt"
+	"math"
 	"strconv"
 	"strings"
 
@@ -185,3 +186,23 @@ func limitOfNumber(r *validate.DoubleRules, unit string) string {
 }
 
 func plain(v float64) string { return strconv.FormatFloat(v, 'f', -1, 64) }
+
+// Bounds reads the rules of the numbers of a message, as one test for each
+// field: whether a value keeps all of them.
+func Bounds(d protoreflect.MessageDescriptor) map[string]func(v float64) bool {
+	bounds := map[string]func(v float64) bool{}
+	for i := range d.Fields().Len() {
+		field := d.Fields().Get(i)
+		rules, ok := proto.GetExtension(field.Options(), validate.E_Field).(*validate.FieldRules)
+		if !ok || rules.GetDouble() == nil {
+			continue
+		}
+		r := rules.GetDouble()
+		bounds[string(field.Name())] = func(v float64) bool {
+			return !math.IsNaN(v) && !math.IsInf(v, 0) &&
+				(!r.HasGt() || v > r.GetGt()) && (!r.HasGte() || v >= r.GetGte()) &&
+				(!r.HasLt() || v < r.GetLt()) && (!r.HasLte() || v <= r.GetLte())
+		}
+	}
+	return bounds
+}

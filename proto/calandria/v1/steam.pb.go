@@ -92,8 +92,8 @@ func (Phase) EnumDescriptor() ([]byte, []int) {
 	return file_calandria_v1_steam_proto_rawDescGZIP(), []int{0}
 }
 
-// GetSteamStateRequest gives exactly two coordinates of a state: pressure and
-// temperature, or dryness_fraction with one of them.
+// GetSteamStateRequest gives exactly two coordinates of a state: one of the
+// pairs that GetSteamState answers.
 type GetSteamStateRequest struct {
 	state protoimpl.MessageState `protogen:"open.v1"`
 	// Absolute pressure.
@@ -102,6 +102,10 @@ type GetSteamStateRequest struct {
 	TemperatureC *float64 `protobuf:"fixed64,2,opt,name=temperature_c,json=temperatureC,proto3,oneof" json:"temperature_c,omitempty"`
 	// Vapour per mass of mixture: 0 saturated liquid, 1 saturated vapour.
 	DrynessFraction *float64 `protobuf:"fixed64,3,opt,name=dryness_fraction,json=drynessFraction,proto3,oneof" json:"dryness_fraction,omitempty"`
+	// Specific enthalpy; 0 for saturated liquid at the triple point, nearly.
+	EnthalpyKjPerKg *float64 `protobuf:"fixed64,4,opt,name=enthalpy_kj_per_kg,json=enthalpyKjPerKg,proto3,oneof" json:"enthalpy_kj_per_kg,omitempty"`
+	// Specific entropy; 0 for saturated liquid at the triple point.
+	EntropyKjPerKgK *float64 `protobuf:"fixed64,5,opt,name=entropy_kj_per_kg_k,json=entropyKjPerKgK,proto3,oneof" json:"entropy_kj_per_kg_k,omitempty"`
 	unknownFields   protoimpl.UnknownFields
 	sizeCache       protoimpl.SizeCache
 }
@@ -157,6 +161,20 @@ func (x *GetSteamStateRequest) GetDrynessFraction() float64 {
 	return 0
 }
 
+func (x *GetSteamStateRequest) GetEnthalpyKjPerKg() float64 {
+	if x != nil && x.EnthalpyKjPerKg != nil {
+		return *x.EnthalpyKjPerKg
+	}
+	return 0
+}
+
+func (x *GetSteamStateRequest) GetEntropyKjPerKgK() float64 {
+	if x != nil && x.EntropyKjPerKgK != nil {
+		return *x.EntropyKjPerKgK
+	}
+	return 0
+}
+
 // SteamState is one state of water or steam. What does not exist in a state
 // is absent.
 type SteamState struct {
@@ -182,12 +200,20 @@ type SteamState struct {
 	InternalEnergyKjPerKg float64 `protobuf:"fixed64,9,opt,name=internal_energy_kj_per_kg,json=internalEnergyKjPerKg,proto3" json:"internal_energy_kj_per_kg,omitempty"`
 	// Specific entropy.
 	EntropyKjPerKgK float64 `protobuf:"fixed64,10,opt,name=entropy_kj_per_kg_k,json=entropyKjPerKgK,proto3" json:"entropy_kj_per_kg_k,omitempty"`
-	// Specific heat at constant pressure; absent in wet steam.
+	// Specific heat at constant pressure; absent in wet steam and at the critical
+	// point.
 	SpecificHeatCpKjPerKgK *float64 `protobuf:"fixed64,11,opt,name=specific_heat_cp_kj_per_kg_k,json=specificHeatCpKjPerKgK,proto3,oneof" json:"specific_heat_cp_kj_per_kg_k,omitempty"`
 	// Specific heat at constant volume; absent in wet steam.
 	SpecificHeatCvKjPerKgK *float64 `protobuf:"fixed64,12,opt,name=specific_heat_cv_kj_per_kg_k,json=specificHeatCvKjPerKgK,proto3,oneof" json:"specific_heat_cv_kj_per_kg_k,omitempty"`
 	// Speed of sound; absent in wet steam.
 	SpeedOfSoundMPerS *float64 `protobuf:"fixed64,13,opt,name=speed_of_sound_m_per_s,json=speedOfSoundMPerS,proto3,oneof" json:"speed_of_sound_m_per_s,omitempty"`
+	// Dynamic viscosity; absent in wet steam and above 900 degC.
+	ViscosityPaS *float64 `protobuf:"fixed64,14,opt,name=viscosity_pa_s,json=viscosityPaS,proto3,oneof" json:"viscosity_pa_s,omitempty"`
+	// Thermal conductivity; absent in wet steam, above 900 degC and at the
+	// critical point.
+	ConductivityWPerMK *float64 `protobuf:"fixed64,15,opt,name=conductivity_w_per_m_k,json=conductivityWPerMK,proto3,oneof" json:"conductivity_w_per_m_k,omitempty"`
+	// Surface tension between liquid and vapour, on the saturation line only.
+	SurfaceTensionNPerM *float64 `protobuf:"fixed64,16,opt,name=surface_tension_n_per_m,json=surfaceTensionNPerM,proto3,oneof" json:"surface_tension_n_per_m,omitempty"`
 	// Remarks; empty inside of a Saturation, which carries its own.
 	Advisories []*Advisory `protobuf:"bytes,17,rep,name=advisories,proto3" json:"advisories,omitempty"`
 	// What the numbers rest on; absent inside of a Saturation.
@@ -313,6 +339,27 @@ func (x *SteamState) GetSpecificHeatCvKjPerKgK() float64 {
 func (x *SteamState) GetSpeedOfSoundMPerS() float64 {
 	if x != nil && x.SpeedOfSoundMPerS != nil {
 		return *x.SpeedOfSoundMPerS
+	}
+	return 0
+}
+
+func (x *SteamState) GetViscosityPaS() float64 {
+	if x != nil && x.ViscosityPaS != nil {
+		return *x.ViscosityPaS
+	}
+	return 0
+}
+
+func (x *SteamState) GetConductivityWPerMK() float64 {
+	if x != nil && x.ConductivityWPerMK != nil {
+		return *x.ConductivityWPerMK
+	}
+	return 0
+}
+
+func (x *SteamState) GetSurfaceTensionNPerM() float64 {
+	if x != nil && x.SurfaceTensionNPerM != nil {
+		return *x.SurfaceTensionNPerM
 	}
 	return 0
 }
@@ -486,18 +533,517 @@ func (x *Saturation) GetProvenance() *Provenance {
 	return nil
 }
 
+// ComputeSteamStatesRequest gives the coordinates of many states: two columns
+// of the same length, one of the pairs that GetSteamState answers.
+type ComputeSteamStatesRequest struct {
+	state protoimpl.MessageState `protogen:"open.v1"`
+	// Absolute pressures.
+	PressureKpaAbs []float64 `protobuf:"fixed64,1,rep,packed,name=pressure_kpa_abs,json=pressureKpaAbs,proto3" json:"pressure_kpa_abs,omitempty"`
+	// Temperatures.
+	TemperatureC []float64 `protobuf:"fixed64,2,rep,packed,name=temperature_c,json=temperatureC,proto3" json:"temperature_c,omitempty"`
+	// Vapour per mass of mixture.
+	DrynessFraction []float64 `protobuf:"fixed64,3,rep,packed,name=dryness_fraction,json=drynessFraction,proto3" json:"dryness_fraction,omitempty"`
+	// Specific enthalpies.
+	EnthalpyKjPerKg []float64 `protobuf:"fixed64,4,rep,packed,name=enthalpy_kj_per_kg,json=enthalpyKjPerKg,proto3" json:"enthalpy_kj_per_kg,omitempty"`
+	// Specific entropies.
+	EntropyKjPerKgK []float64 `protobuf:"fixed64,5,rep,packed,name=entropy_kj_per_kg_k,json=entropyKjPerKgK,proto3" json:"entropy_kj_per_kg_k,omitempty"`
+	// Names of the columns wanted in the answer; all of them when left out.
+	Want          []string `protobuf:"bytes,6,rep,name=want,proto3" json:"want,omitempty"`
+	unknownFields protoimpl.UnknownFields
+	sizeCache     protoimpl.SizeCache
+}
+
+func (x *ComputeSteamStatesRequest) Reset() {
+	*x = ComputeSteamStatesRequest{}
+	mi := &file_calandria_v1_steam_proto_msgTypes[4]
+	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+	ms.StoreMessageInfo(mi)
+}
+
+func (x *ComputeSteamStatesRequest) String() string {
+	return protoimpl.X.MessageStringOf(x)
+}
+
+func (*ComputeSteamStatesRequest) ProtoMessage() {}
+
+func (x *ComputeSteamStatesRequest) ProtoReflect() protoreflect.Message {
+	mi := &file_calandria_v1_steam_proto_msgTypes[4]
+	if x != nil {
+		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+		if ms.LoadMessageInfo() == nil {
+			ms.StoreMessageInfo(mi)
+		}
+		return ms
+	}
+	return mi.MessageOf(x)
+}
+
+// Deprecated: Use ComputeSteamStatesRequest.ProtoReflect.Descriptor instead.
+func (*ComputeSteamStatesRequest) Descriptor() ([]byte, []int) {
+	return file_calandria_v1_steam_proto_rawDescGZIP(), []int{4}
+}
+
+func (x *ComputeSteamStatesRequest) GetPressureKpaAbs() []float64 {
+	if x != nil {
+		return x.PressureKpaAbs
+	}
+	return nil
+}
+
+func (x *ComputeSteamStatesRequest) GetTemperatureC() []float64 {
+	if x != nil {
+		return x.TemperatureC
+	}
+	return nil
+}
+
+func (x *ComputeSteamStatesRequest) GetDrynessFraction() []float64 {
+	if x != nil {
+		return x.DrynessFraction
+	}
+	return nil
+}
+
+func (x *ComputeSteamStatesRequest) GetEnthalpyKjPerKg() []float64 {
+	if x != nil {
+		return x.EnthalpyKjPerKg
+	}
+	return nil
+}
+
+func (x *ComputeSteamStatesRequest) GetEntropyKjPerKgK() []float64 {
+	if x != nil {
+		return x.EntropyKjPerKgK
+	}
+	return nil
+}
+
+func (x *ComputeSteamStatesRequest) GetWant() []string {
+	if x != nil {
+		return x.Want
+	}
+	return nil
+}
+
+// SteamStates are the states that could be computed, in columns of the same
+// length, and those that could not.
+type SteamStates struct {
+	state protoimpl.MessageState `protogen:"open.v1"`
+	// Place of each state in the request, from 0.
+	Index []int32 `protobuf:"varint,1,rep,packed,name=index,proto3" json:"index,omitempty"`
+	// Regions of IAPWS R7-97, as in SteamState.
+	Region []int32 `protobuf:"varint,2,rep,packed,name=region,proto3" json:"region,omitempty"`
+	// Phases.
+	Phase []Phase `protobuf:"varint,3,rep,packed,name=phase,proto3,enum=calandria.v1.Phase" json:"phase,omitempty"`
+	// Absolute pressures.
+	PressureKpaAbs []float64 `protobuf:"fixed64,4,rep,packed,name=pressure_kpa_abs,json=pressureKpaAbs,proto3" json:"pressure_kpa_abs,omitempty"`
+	// Temperatures.
+	TemperatureC []float64 `protobuf:"fixed64,5,rep,packed,name=temperature_c,json=temperatureC,proto3" json:"temperature_c,omitempty"`
+	// Specific volumes.
+	SpecificVolumeM3PerKg []float64 `protobuf:"fixed64,6,rep,packed,name=specific_volume_m3_per_kg,json=specificVolumeM3PerKg,proto3" json:"specific_volume_m3_per_kg,omitempty"`
+	// Densities.
+	DensityKgPerM3 []float64 `protobuf:"fixed64,7,rep,packed,name=density_kg_per_m3,json=densityKgPerM3,proto3" json:"density_kg_per_m3,omitempty"`
+	// Specific enthalpies.
+	EnthalpyKjPerKg []float64 `protobuf:"fixed64,8,rep,packed,name=enthalpy_kj_per_kg,json=enthalpyKjPerKg,proto3" json:"enthalpy_kj_per_kg,omitempty"`
+	// Specific internal energies.
+	InternalEnergyKjPerKg []float64 `protobuf:"fixed64,9,rep,packed,name=internal_energy_kj_per_kg,json=internalEnergyKjPerKg,proto3" json:"internal_energy_kj_per_kg,omitempty"`
+	// Specific entropies.
+	EntropyKjPerKgK []float64 `protobuf:"fixed64,10,rep,packed,name=entropy_kj_per_kg_k,json=entropyKjPerKgK,proto3" json:"entropy_kj_per_kg_k,omitempty"`
+	// Drynesses, where states lie on the saturation line.
+	DrynessFraction *SparseColumn `protobuf:"bytes,11,opt,name=dryness_fraction,json=drynessFraction,proto3" json:"dryness_fraction,omitempty"`
+	// Specific heats at constant pressure, where they exist.
+	SpecificHeatCpKjPerKgK *SparseColumn `protobuf:"bytes,12,opt,name=specific_heat_cp_kj_per_kg_k,json=specificHeatCpKjPerKgK,proto3" json:"specific_heat_cp_kj_per_kg_k,omitempty"`
+	// Specific heats at constant volume, where they exist.
+	SpecificHeatCvKjPerKgK *SparseColumn `protobuf:"bytes,13,opt,name=specific_heat_cv_kj_per_kg_k,json=specificHeatCvKjPerKgK,proto3" json:"specific_heat_cv_kj_per_kg_k,omitempty"`
+	// Speeds of sound, where they exist.
+	SpeedOfSoundMPerS *SparseColumn `protobuf:"bytes,14,opt,name=speed_of_sound_m_per_s,json=speedOfSoundMPerS,proto3" json:"speed_of_sound_m_per_s,omitempty"`
+	// Dynamic viscosities, where they exist.
+	ViscosityPaS *SparseColumn `protobuf:"bytes,15,opt,name=viscosity_pa_s,json=viscosityPaS,proto3" json:"viscosity_pa_s,omitempty"`
+	// Thermal conductivities, where they exist.
+	ConductivityWPerMK *SparseColumn `protobuf:"bytes,16,opt,name=conductivity_w_per_m_k,json=conductivityWPerMK,proto3" json:"conductivity_w_per_m_k,omitempty"`
+	// Surface tensions, where they exist.
+	SurfaceTensionNPerM *SparseColumn `protobuf:"bytes,17,opt,name=surface_tension_n_per_m,json=surfaceTensionNPerM,proto3" json:"surface_tension_n_per_m,omitempty"`
+	// Remarks on some of the states.
+	Advisories []*StatesAdvisory `protobuf:"bytes,18,rep,name=advisories,proto3" json:"advisories,omitempty"`
+	// The states of the request that have no answer, each with the reason that
+	// GetSteamState would give.
+	Failures []*StateFailure `protobuf:"bytes,19,rep,name=failures,proto3" json:"failures,omitempty"`
+	// What the numbers rest on.
+	Provenance    *Provenance `protobuf:"bytes,20,opt,name=provenance,proto3" json:"provenance,omitempty"`
+	unknownFields protoimpl.UnknownFields
+	sizeCache     protoimpl.SizeCache
+}
+
+func (x *SteamStates) Reset() {
+	*x = SteamStates{}
+	mi := &file_calandria_v1_steam_proto_msgTypes[5]
+	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+	ms.StoreMessageInfo(mi)
+}
+
+func (x *SteamStates) String() string {
+	return protoimpl.X.MessageStringOf(x)
+}
+
+func (*SteamStates) ProtoMessage() {}
+
+func (x *SteamStates) ProtoReflect() protoreflect.Message {
+	mi := &file_calandria_v1_steam_proto_msgTypes[5]
+	if x != nil {
+		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+		if ms.LoadMessageInfo() == nil {
+			ms.StoreMessageInfo(mi)
+		}
+		return ms
+	}
+	return mi.MessageOf(x)
+}
+
+// Deprecated: Use SteamStates.ProtoReflect.Descriptor instead.
+func (*SteamStates) Descriptor() ([]byte, []int) {
+	return file_calandria_v1_steam_proto_rawDescGZIP(), []int{5}
+}
+
+func (x *SteamStates) GetIndex() []int32 {
+	if x != nil {
+		return x.Index
+	}
+	return nil
+}
+
+func (x *SteamStates) GetRegion() []int32 {
+	if x != nil {
+		return x.Region
+	}
+	return nil
+}
+
+func (x *SteamStates) GetPhase() []Phase {
+	if x != nil {
+		return x.Phase
+	}
+	return nil
+}
+
+func (x *SteamStates) GetPressureKpaAbs() []float64 {
+	if x != nil {
+		return x.PressureKpaAbs
+	}
+	return nil
+}
+
+func (x *SteamStates) GetTemperatureC() []float64 {
+	if x != nil {
+		return x.TemperatureC
+	}
+	return nil
+}
+
+func (x *SteamStates) GetSpecificVolumeM3PerKg() []float64 {
+	if x != nil {
+		return x.SpecificVolumeM3PerKg
+	}
+	return nil
+}
+
+func (x *SteamStates) GetDensityKgPerM3() []float64 {
+	if x != nil {
+		return x.DensityKgPerM3
+	}
+	return nil
+}
+
+func (x *SteamStates) GetEnthalpyKjPerKg() []float64 {
+	if x != nil {
+		return x.EnthalpyKjPerKg
+	}
+	return nil
+}
+
+func (x *SteamStates) GetInternalEnergyKjPerKg() []float64 {
+	if x != nil {
+		return x.InternalEnergyKjPerKg
+	}
+	return nil
+}
+
+func (x *SteamStates) GetEntropyKjPerKgK() []float64 {
+	if x != nil {
+		return x.EntropyKjPerKgK
+	}
+	return nil
+}
+
+func (x *SteamStates) GetDrynessFraction() *SparseColumn {
+	if x != nil {
+		return x.DrynessFraction
+	}
+	return nil
+}
+
+func (x *SteamStates) GetSpecificHeatCpKjPerKgK() *SparseColumn {
+	if x != nil {
+		return x.SpecificHeatCpKjPerKgK
+	}
+	return nil
+}
+
+func (x *SteamStates) GetSpecificHeatCvKjPerKgK() *SparseColumn {
+	if x != nil {
+		return x.SpecificHeatCvKjPerKgK
+	}
+	return nil
+}
+
+func (x *SteamStates) GetSpeedOfSoundMPerS() *SparseColumn {
+	if x != nil {
+		return x.SpeedOfSoundMPerS
+	}
+	return nil
+}
+
+func (x *SteamStates) GetViscosityPaS() *SparseColumn {
+	if x != nil {
+		return x.ViscosityPaS
+	}
+	return nil
+}
+
+func (x *SteamStates) GetConductivityWPerMK() *SparseColumn {
+	if x != nil {
+		return x.ConductivityWPerMK
+	}
+	return nil
+}
+
+func (x *SteamStates) GetSurfaceTensionNPerM() *SparseColumn {
+	if x != nil {
+		return x.SurfaceTensionNPerM
+	}
+	return nil
+}
+
+func (x *SteamStates) GetAdvisories() []*StatesAdvisory {
+	if x != nil {
+		return x.Advisories
+	}
+	return nil
+}
+
+func (x *SteamStates) GetFailures() []*StateFailure {
+	if x != nil {
+		return x.Failures
+	}
+	return nil
+}
+
+func (x *SteamStates) GetProvenance() *Provenance {
+	if x != nil {
+		return x.Provenance
+	}
+	return nil
+}
+
+// SparseColumn holds a number of some of the states only, since the others do
+// not have it.
+type SparseColumn struct {
+	state protoimpl.MessageState `protogen:"open.v1"`
+	// Place of each state in the request, from 0.
+	Index []int32 `protobuf:"varint,1,rep,packed,name=index,proto3" json:"index,omitempty"`
+	// The numbers, one for each index.
+	Value         []float64 `protobuf:"fixed64,2,rep,packed,name=value,proto3" json:"value,omitempty"`
+	unknownFields protoimpl.UnknownFields
+	sizeCache     protoimpl.SizeCache
+}
+
+func (x *SparseColumn) Reset() {
+	*x = SparseColumn{}
+	mi := &file_calandria_v1_steam_proto_msgTypes[6]
+	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+	ms.StoreMessageInfo(mi)
+}
+
+func (x *SparseColumn) String() string {
+	return protoimpl.X.MessageStringOf(x)
+}
+
+func (*SparseColumn) ProtoMessage() {}
+
+func (x *SparseColumn) ProtoReflect() protoreflect.Message {
+	mi := &file_calandria_v1_steam_proto_msgTypes[6]
+	if x != nil {
+		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+		if ms.LoadMessageInfo() == nil {
+			ms.StoreMessageInfo(mi)
+		}
+		return ms
+	}
+	return mi.MessageOf(x)
+}
+
+// Deprecated: Use SparseColumn.ProtoReflect.Descriptor instead.
+func (*SparseColumn) Descriptor() ([]byte, []int) {
+	return file_calandria_v1_steam_proto_rawDescGZIP(), []int{6}
+}
+
+func (x *SparseColumn) GetIndex() []int32 {
+	if x != nil {
+		return x.Index
+	}
+	return nil
+}
+
+func (x *SparseColumn) GetValue() []float64 {
+	if x != nil {
+		return x.Value
+	}
+	return nil
+}
+
+// StatesAdvisory is a remark on some of many states.
+type StatesAdvisory struct {
+	state protoimpl.MessageState `protogen:"open.v1"`
+	// The remark.
+	Advisory *Advisory `protobuf:"bytes,1,opt,name=advisory,proto3" json:"advisory,omitempty"`
+	// Places in the request of the states that it is about, from 0.
+	Index         []int32 `protobuf:"varint,2,rep,packed,name=index,proto3" json:"index,omitempty"`
+	unknownFields protoimpl.UnknownFields
+	sizeCache     protoimpl.SizeCache
+}
+
+func (x *StatesAdvisory) Reset() {
+	*x = StatesAdvisory{}
+	mi := &file_calandria_v1_steam_proto_msgTypes[7]
+	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+	ms.StoreMessageInfo(mi)
+}
+
+func (x *StatesAdvisory) String() string {
+	return protoimpl.X.MessageStringOf(x)
+}
+
+func (*StatesAdvisory) ProtoMessage() {}
+
+func (x *StatesAdvisory) ProtoReflect() protoreflect.Message {
+	mi := &file_calandria_v1_steam_proto_msgTypes[7]
+	if x != nil {
+		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+		if ms.LoadMessageInfo() == nil {
+			ms.StoreMessageInfo(mi)
+		}
+		return ms
+	}
+	return mi.MessageOf(x)
+}
+
+// Deprecated: Use StatesAdvisory.ProtoReflect.Descriptor instead.
+func (*StatesAdvisory) Descriptor() ([]byte, []int) {
+	return file_calandria_v1_steam_proto_rawDescGZIP(), []int{7}
+}
+
+func (x *StatesAdvisory) GetAdvisory() *Advisory {
+	if x != nil {
+		return x.Advisory
+	}
+	return nil
+}
+
+func (x *StatesAdvisory) GetIndex() []int32 {
+	if x != nil {
+		return x.Index
+	}
+	return nil
+}
+
+// StateFailure is a state that has no answer.
+type StateFailure struct {
+	state protoimpl.MessageState `protogen:"open.v1"`
+	// Place in the request, from 0.
+	Index int32 `protobuf:"varint,1,opt,name=index,proto3" json:"index,omitempty"`
+	// Why.
+	Reason Reason `protobuf:"varint,2,opt,name=reason,proto3,enum=calandria.v1.Reason" json:"reason,omitempty"`
+	// Why, for a person.
+	Message string `protobuf:"bytes,3,opt,name=message,proto3" json:"message,omitempty"`
+	// Every number that can not be accepted, by the name of its column.
+	Violations    []*Violation `protobuf:"bytes,4,rep,name=violations,proto3" json:"violations,omitempty"`
+	unknownFields protoimpl.UnknownFields
+	sizeCache     protoimpl.SizeCache
+}
+
+func (x *StateFailure) Reset() {
+	*x = StateFailure{}
+	mi := &file_calandria_v1_steam_proto_msgTypes[8]
+	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+	ms.StoreMessageInfo(mi)
+}
+
+func (x *StateFailure) String() string {
+	return protoimpl.X.MessageStringOf(x)
+}
+
+func (*StateFailure) ProtoMessage() {}
+
+func (x *StateFailure) ProtoReflect() protoreflect.Message {
+	mi := &file_calandria_v1_steam_proto_msgTypes[8]
+	if x != nil {
+		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+		if ms.LoadMessageInfo() == nil {
+			ms.StoreMessageInfo(mi)
+		}
+		return ms
+	}
+	return mi.MessageOf(x)
+}
+
+// Deprecated: Use StateFailure.ProtoReflect.Descriptor instead.
+func (*StateFailure) Descriptor() ([]byte, []int) {
+	return file_calandria_v1_steam_proto_rawDescGZIP(), []int{8}
+}
+
+func (x *StateFailure) GetIndex() int32 {
+	if x != nil {
+		return x.Index
+	}
+	return 0
+}
+
+func (x *StateFailure) GetReason() Reason {
+	if x != nil {
+		return x.Reason
+	}
+	return Reason_REASON_UNSPECIFIED
+}
+
+func (x *StateFailure) GetMessage() string {
+	if x != nil {
+		return x.Message
+	}
+	return ""
+}
+
+func (x *StateFailure) GetViolations() []*Violation {
+	if x != nil {
+		return x.Violations
+	}
+	return nil
+}
+
 var File_calandria_v1_steam_proto protoreflect.FileDescriptor
 
 const file_calandria_v1_steam_proto_rawDesc = "" +
 	"\n" +
-	"\x18calandria/v1/steam.proto\x12\fcalandria.v1\x1a\x1bbuf/validate/validate.proto\x1a\x1dcalandria/v1/provenance.proto\x1a\x1cgoogle/api/annotations.proto\"\xac\x02\n" +
+	"\x18calandria/v1/steam.proto\x12\fcalandria.v1\x1a\x1bbuf/validate/validate.proto\x1a\x18calandria/v1/error.proto\x1a\x1dcalandria/v1/provenance.proto\x1a\x1cgoogle/api/annotations.proto\"\xf6\x03\n" +
 	"\x14GetSteamStateRequest\x12H\n" +
 	"\x10pressure_kpa_abs\x18\x01 \x01(\x01B\x19\xbaH\x16\x12\x14@\x01\x19\x00\x00\x00\x00\x00j\xf8@!\x00\x00\x00\x00\x00\x00\x00\x00H\x00R\x0epressureKpaAbs\x88\x01\x01\x12C\n" +
 	"\rtemperature_c\x18\x02 \x01(\x01B\x19\xbaH\x16\x12\x14@\x01\x19\x00\x00\x00\x00\x00@\x9f@)\x00\x00\x00\x00\x00\x00\x00\x00H\x01R\ftemperatureC\x88\x01\x01\x12I\n" +
-	"\x10dryness_fraction\x18\x03 \x01(\x01B\x19\xbaH\x16\x12\x14@\x01\x19\x00\x00\x00\x00\x00\x00\xf0?)\x00\x00\x00\x00\x00\x00\x00\x00H\x02R\x0fdrynessFraction\x88\x01\x01B\x13\n" +
+	"\x10dryness_fraction\x18\x03 \x01(\x01B\x19\xbaH\x16\x12\x14@\x01\x19\x00\x00\x00\x00\x00\x00\xf0?)\x00\x00\x00\x00\x00\x00\x00\x00H\x02R\x0fdrynessFraction\x88\x01\x01\x12K\n" +
+	"\x12enthalpy_kj_per_kg\x18\x04 \x01(\x01B\x19\xbaH\x16\x12\x14@\x01\x19\x00\x00\x00\x00\x00\x88\xc3@)\x00\x00\x00\x00\x00@\x8f\xc0H\x03R\x0fenthalpyKjPerKg\x88\x01\x01\x12L\n" +
+	"\x13entropy_kj_per_kg_k\x18\x05 \x01(\x01B\x19\xbaH\x16\x12\x14@\x01\x19\x00\x00\x00\x00\x00\x00>@)\x00\x00\x00\x00\x00\x00$\xc0H\x04R\x0fentropyKjPerKgK\x88\x01\x01B\x13\n" +
 	"\x11_pressure_kpa_absB\x10\n" +
 	"\x0e_temperature_cB\x13\n" +
-	"\x11_dryness_fraction\"\xea\x06\n" +
+	"\x11_dryness_fractionB\x15\n" +
+	"\x13_enthalpy_kj_per_kgB\x16\n" +
+	"\x14_entropy_kj_per_kg_k\"\xd3\b\n" +
 	"\n" +
 	"SteamState\x12\x16\n" +
 	"\x06region\x18\x01 \x01(\x05R\x06region\x12)\n" +
@@ -513,7 +1059,10 @@ const file_calandria_v1_steam_proto_rawDesc = "" +
 	" \x01(\x01R\x0fentropyKjPerKgK\x12A\n" +
 	"\x1cspecific_heat_cp_kj_per_kg_k\x18\v \x01(\x01H\x01R\x16specificHeatCpKjPerKgK\x88\x01\x01\x12A\n" +
 	"\x1cspecific_heat_cv_kj_per_kg_k\x18\f \x01(\x01H\x02R\x16specificHeatCvKjPerKgK\x88\x01\x01\x126\n" +
-	"\x16speed_of_sound_m_per_s\x18\r \x01(\x01H\x03R\x11speedOfSoundMPerS\x88\x01\x01\x126\n" +
+	"\x16speed_of_sound_m_per_s\x18\r \x01(\x01H\x03R\x11speedOfSoundMPerS\x88\x01\x01\x12)\n" +
+	"\x0eviscosity_pa_s\x18\x0e \x01(\x01H\x04R\fviscosityPaS\x88\x01\x01\x127\n" +
+	"\x16conductivity_w_per_m_k\x18\x0f \x01(\x01H\x05R\x12conductivityWPerMK\x88\x01\x01\x129\n" +
+	"\x17surface_tension_n_per_m\x18\x10 \x01(\x01H\x06R\x13surfaceTensionNPerM\x88\x01\x01\x126\n" +
 	"\n" +
 	"advisories\x18\x11 \x03(\v2\x16.calandria.v1.AdvisoryR\n" +
 	"advisories\x128\n" +
@@ -523,7 +1072,10 @@ const file_calandria_v1_steam_proto_rawDesc = "" +
 	"\x11_dryness_fractionB\x1f\n" +
 	"\x1d_specific_heat_cp_kj_per_kg_kB\x1f\n" +
 	"\x1d_specific_heat_cv_kj_per_kg_kB\x19\n" +
-	"\x17_speed_of_sound_m_per_s\"\xcc\x01\n" +
+	"\x17_speed_of_sound_m_per_sB\x11\n" +
+	"\x0f_viscosity_pa_sB\x19\n" +
+	"\x17_conductivity_w_per_m_kB\x1a\n" +
+	"\x18_surface_tension_n_per_m\"\xcc\x01\n" +
 	"\x14GetSaturationRequest\x12H\n" +
 	"\x10pressure_kpa_abs\x18\x01 \x01(\x01B\x19\xbaH\x16\x12\x14@\x01\x19\x00\x00\x00\x00\x00j\xf8@!\x00\x00\x00\x00\x00\x00\x00\x00H\x00R\x0epressureKpaAbs\x88\x01\x01\x12C\n" +
 	"\rtemperature_c\x18\x02 \x01(\x01B\x19\xbaH\x16\x12\x14@\x01\x19\x00\x00\x00\x00\x00@\x9f@)\x00\x00\x00\x00\x00\x00\x00\x00H\x01R\ftemperatureC\x88\x01\x01B\x13\n" +
@@ -541,7 +1093,58 @@ const file_calandria_v1_steam_proto_rawDesc = "" +
 	"advisories\x128\n" +
 	"\n" +
 	"provenance\x18\a \x01(\v2\x18.calandria.v1.ProvenanceR\n" +
-	"provenance*\xbf\x01\n" +
+	"provenance\"\x9f\x05\n" +
+	"\x19ComputeSteamStatesRequest\x124\n" +
+	"\x10pressure_kpa_abs\x18\x01 \x03(\x01B\n" +
+	"\xbaH\a\x92\x01\x04\x10\xa0\x9c\x01R\x0epressureKpaAbs\x12/\n" +
+	"\rtemperature_c\x18\x02 \x03(\x01B\n" +
+	"\xbaH\a\x92\x01\x04\x10\xa0\x9c\x01R\ftemperatureC\x125\n" +
+	"\x10dryness_fraction\x18\x03 \x03(\x01B\n" +
+	"\xbaH\a\x92\x01\x04\x10\xa0\x9c\x01R\x0fdrynessFraction\x127\n" +
+	"\x12enthalpy_kj_per_kg\x18\x04 \x03(\x01B\n" +
+	"\xbaH\a\x92\x01\x04\x10\xa0\x9c\x01R\x0fenthalpyKjPerKg\x128\n" +
+	"\x13entropy_kj_per_kg_k\x18\x05 \x03(\x01B\n" +
+	"\xbaH\a\x92\x01\x04\x10\xa0\x9c\x01R\x0fentropyKjPerKgK\x12\xf0\x02\n" +
+	"\x04want\x18\x06 \x03(\tB\xdb\x02\xbaH\xd7\x02\x92\x01\xd3\x02\x10\x10\x18\x01\"\xcc\x02r\xc9\x02R\x06regionR\x05phaseR\x10pressure_kpa_absR\rtemperature_cR\x10dryness_fractionR\x19specific_volume_m3_per_kgR\x11density_kg_per_m3R\x12enthalpy_kj_per_kgR\x19internal_energy_kj_per_kgR\x13entropy_kj_per_kg_kR\x1cspecific_heat_cp_kj_per_kg_kR\x1cspecific_heat_cv_kj_per_kg_kR\x16speed_of_sound_m_per_sR\x0eviscosity_pa_sR\x16conductivity_w_per_m_kR\x17surface_tension_n_per_mR\x04want\"\x8d\t\n" +
+	"\vSteamStates\x12\x14\n" +
+	"\x05index\x18\x01 \x03(\x05R\x05index\x12\x16\n" +
+	"\x06region\x18\x02 \x03(\x05R\x06region\x12)\n" +
+	"\x05phase\x18\x03 \x03(\x0e2\x13.calandria.v1.PhaseR\x05phase\x12(\n" +
+	"\x10pressure_kpa_abs\x18\x04 \x03(\x01R\x0epressureKpaAbs\x12#\n" +
+	"\rtemperature_c\x18\x05 \x03(\x01R\ftemperatureC\x128\n" +
+	"\x19specific_volume_m3_per_kg\x18\x06 \x03(\x01R\x15specificVolumeM3PerKg\x12)\n" +
+	"\x11density_kg_per_m3\x18\a \x03(\x01R\x0edensityKgPerM3\x12+\n" +
+	"\x12enthalpy_kj_per_kg\x18\b \x03(\x01R\x0fenthalpyKjPerKg\x128\n" +
+	"\x19internal_energy_kj_per_kg\x18\t \x03(\x01R\x15internalEnergyKjPerKg\x12,\n" +
+	"\x13entropy_kj_per_kg_k\x18\n" +
+	" \x03(\x01R\x0fentropyKjPerKgK\x12E\n" +
+	"\x10dryness_fraction\x18\v \x01(\v2\x1a.calandria.v1.SparseColumnR\x0fdrynessFraction\x12X\n" +
+	"\x1cspecific_heat_cp_kj_per_kg_k\x18\f \x01(\v2\x1a.calandria.v1.SparseColumnR\x16specificHeatCpKjPerKgK\x12X\n" +
+	"\x1cspecific_heat_cv_kj_per_kg_k\x18\r \x01(\v2\x1a.calandria.v1.SparseColumnR\x16specificHeatCvKjPerKgK\x12M\n" +
+	"\x16speed_of_sound_m_per_s\x18\x0e \x01(\v2\x1a.calandria.v1.SparseColumnR\x11speedOfSoundMPerS\x12@\n" +
+	"\x0eviscosity_pa_s\x18\x0f \x01(\v2\x1a.calandria.v1.SparseColumnR\fviscosityPaS\x12N\n" +
+	"\x16conductivity_w_per_m_k\x18\x10 \x01(\v2\x1a.calandria.v1.SparseColumnR\x12conductivityWPerMK\x12P\n" +
+	"\x17surface_tension_n_per_m\x18\x11 \x01(\v2\x1a.calandria.v1.SparseColumnR\x13surfaceTensionNPerM\x12<\n" +
+	"\n" +
+	"advisories\x18\x12 \x03(\v2\x1c.calandria.v1.StatesAdvisoryR\n" +
+	"advisories\x126\n" +
+	"\bfailures\x18\x13 \x03(\v2\x1a.calandria.v1.StateFailureR\bfailures\x128\n" +
+	"\n" +
+	"provenance\x18\x14 \x01(\v2\x18.calandria.v1.ProvenanceR\n" +
+	"provenance\":\n" +
+	"\fSparseColumn\x12\x14\n" +
+	"\x05index\x18\x01 \x03(\x05R\x05index\x12\x14\n" +
+	"\x05value\x18\x02 \x03(\x01R\x05value\"Z\n" +
+	"\x0eStatesAdvisory\x122\n" +
+	"\badvisory\x18\x01 \x01(\v2\x16.calandria.v1.AdvisoryR\badvisory\x12\x14\n" +
+	"\x05index\x18\x02 \x03(\x05R\x05index\"\xa5\x01\n" +
+	"\fStateFailure\x12\x14\n" +
+	"\x05index\x18\x01 \x01(\x05R\x05index\x12,\n" +
+	"\x06reason\x18\x02 \x01(\x0e2\x14.calandria.v1.ReasonR\x06reason\x12\x18\n" +
+	"\amessage\x18\x03 \x01(\tR\amessage\x127\n" +
+	"\n" +
+	"violations\x18\x04 \x03(\v2\x17.calandria.v1.ViolationR\n" +
+	"violations*\xbf\x01\n" +
 	"\x05Phase\x12\x15\n" +
 	"\x11PHASE_UNSPECIFIED\x10\x00\x12\x1b\n" +
 	"\x17PHASE_COMPRESSED_LIQUID\x10\x01\x12\x1a\n" +
@@ -549,10 +1152,11 @@ const file_calandria_v1_steam_proto_rawDesc = "" +
 	"\x0fPHASE_WET_STEAM\x10\x03\x12\x1a\n" +
 	"\x16PHASE_SATURATED_VAPOUR\x10\x04\x12\x1c\n" +
 	"\x18PHASE_SUPERHEATED_VAPOUR\x10\x05\x12\x17\n" +
-	"\x13PHASE_SUPERCRITICAL\x10\x062\xe3\x01\n" +
+	"\x13PHASE_SUPERCRITICAL\x10\x062\xe2\x02\n" +
 	"\fSteamService\x12f\n" +
 	"\rGetSteamState\x12\".calandria.v1.GetSteamStateRequest\x1a\x18.calandria.v1.SteamState\"\x17\x82\xd3\xe4\x93\x02\x11\x12\x0f/v1/steam/state\x12k\n" +
-	"\rGetSaturation\x12\".calandria.v1.GetSaturationRequest\x1a\x18.calandria.v1.Saturation\"\x1c\x82\xd3\xe4\x93\x02\x16\x12\x14/v1/steam/saturationB<Z:calandria.example/calandria/proto/calandria/v1;calandriav1b\x06proto3"
+	"\rGetSaturation\x12\".calandria.v1.GetSaturationRequest\x1a\x18.calandria.v1.Saturation\"\x1c\x82\xd3\xe4\x93\x02\x16\x12\x14/v1/steam/saturation\x12}\n" +
+	"\x12ComputeSteamStates\x12'.calandria.v1.ComputeSteamStatesRequest\x1a\x19.calandria.v1.SteamStates\"#\x82\xd3\xe4\x93\x02\x1d:\x01*\"\x18/v1/steam/states:computeB<Z:calandria.example/calandria/proto/calandria/v1;calandriav1b\x06proto3"
 
 var (
 	file_calandria_v1_steam_proto_rawDescOnce sync.Once
@@ -567,33 +1171,56 @@ func file_calandria_v1_steam_proto_rawDescGZIP() []byte {
 }
 
 var file_calandria_v1_steam_proto_enumTypes = make([]protoimpl.EnumInfo, 1)
-var file_calandria_v1_steam_proto_msgTypes = make([]protoimpl.MessageInfo, 4)
+var file_calandria_v1_steam_proto_msgTypes = make([]protoimpl.MessageInfo, 9)
 var file_calandria_v1_steam_proto_goTypes = []any{
-	(Phase)(0),                   // 0: calandria.v1.Phase
-	(*GetSteamStateRequest)(nil), // 1: calandria.v1.GetSteamStateRequest
-	(*SteamState)(nil),           // 2: calandria.v1.SteamState
-	(*GetSaturationRequest)(nil), // 3: calandria.v1.GetSaturationRequest
-	(*Saturation)(nil),           // 4: calandria.v1.Saturation
-	(*Advisory)(nil),             // 5: calandria.v1.Advisory
-	(*Provenance)(nil),           // 6: calandria.v1.Provenance
+	(Phase)(0),                        // 0: calandria.v1.Phase
+	(*GetSteamStateRequest)(nil),      // 1: calandria.v1.GetSteamStateRequest
+	(*SteamState)(nil),                // 2: calandria.v1.SteamState
+	(*GetSaturationRequest)(nil),      // 3: calandria.v1.GetSaturationRequest
+	(*Saturation)(nil),                // 4: calandria.v1.Saturation
+	(*ComputeSteamStatesRequest)(nil), // 5: calandria.v1.ComputeSteamStatesRequest
+	(*SteamStates)(nil),               // 6: calandria.v1.SteamStates
+	(*SparseColumn)(nil),              // 7: calandria.v1.SparseColumn
+	(*StatesAdvisory)(nil),            // 8: calandria.v1.StatesAdvisory
+	(*StateFailure)(nil),              // 9: calandria.v1.StateFailure
+	(*Advisory)(nil),                  // 10: calandria.v1.Advisory
+	(*Provenance)(nil),                // 11: calandria.v1.Provenance
+	(Reason)(0),                       // 12: calandria.v1.Reason
+	(*Violation)(nil),                 // 13: calandria.v1.Violation
 }
 var file_calandria_v1_steam_proto_depIdxs = []int32{
-	0, // 0: calandria.v1.SteamState.phase:type_name -> calandria.v1.Phase
-	5, // 1: calandria.v1.SteamState.advisories:type_name -> calandria.v1.Advisory
-	6, // 2: calandria.v1.SteamState.provenance:type_name -> calandria.v1.Provenance
-	2, // 3: calandria.v1.Saturation.liquid:type_name -> calandria.v1.SteamState
-	2, // 4: calandria.v1.Saturation.vapour:type_name -> calandria.v1.SteamState
-	5, // 5: calandria.v1.Saturation.advisories:type_name -> calandria.v1.Advisory
-	6, // 6: calandria.v1.Saturation.provenance:type_name -> calandria.v1.Provenance
-	1, // 7: calandria.v1.SteamService.GetSteamState:input_type -> calandria.v1.GetSteamStateRequest
-	3, // 8: calandria.v1.SteamService.GetSaturation:input_type -> calandria.v1.GetSaturationRequest
-	2, // 9: calandria.v1.SteamService.GetSteamState:output_type -> calandria.v1.SteamState
-	4, // 10: calandria.v1.SteamService.GetSaturation:output_type -> calandria.v1.Saturation
-	9, // [9:11] is the sub-list for method output_type
-	7, // [7:9] is the sub-list for method input_type
-	7, // [7:7] is the sub-list for extension type_name
-	7, // [7:7] is the sub-list for extension extendee
-	0, // [0:7] is the sub-list for field type_name
+	0,  // 0: calandria.v1.SteamState.phase:type_name -> calandria.v1.Phase
+	10, // 1: calandria.v1.SteamState.advisories:type_name -> calandria.v1.Advisory
+	11, // 2: calandria.v1.SteamState.provenance:type_name -> calandria.v1.Provenance
+	2,  // 3: calandria.v1.Saturation.liquid:type_name -> calandria.v1.SteamState
+	2,  // 4: calandria.v1.Saturation.vapour:type_name -> calandria.v1.SteamState
+	10, // 5: calandria.v1.Saturation.advisories:type_name -> calandria.v1.Advisory
+	11, // 6: calandria.v1.Saturation.provenance:type_name -> calandria.v1.Provenance
+	0,  // 7: calandria.v1.SteamStates.phase:type_name -> calandria.v1.Phase
+	7,  // 8: calandria.v1.SteamStates.dryness_fraction:type_name -> calandria.v1.SparseColumn
+	7,  // 9: calandria.v1.SteamStates.specific_heat_cp_kj_per_kg_k:type_name -> calandria.v1.SparseColumn
+	7,  // 10: calandria.v1.SteamStates.specific_heat_cv_kj_per_kg_k:type_name -> calandria.v1.SparseColumn
+	7,  // 11: calandria.v1.SteamStates.speed_of_sound_m_per_s:type_name -> calandria.v1.SparseColumn
+	7,  // 12: calandria.v1.SteamStates.viscosity_pa_s:type_name -> calandria.v1.SparseColumn
+	7,  // 13: calandria.v1.SteamStates.conductivity_w_per_m_k:type_name -> calandria.v1.SparseColumn
+	7,  // 14: calandria.v1.SteamStates.surface_tension_n_per_m:type_name -> calandria.v1.SparseColumn
+	8,  // 15: calandria.v1.SteamStates.advisories:type_name -> calandria.v1.StatesAdvisory
+	9,  // 16: calandria.v1.SteamStates.failures:type_name -> calandria.v1.StateFailure
+	11, // 17: calandria.v1.SteamStates.provenance:type_name -> calandria.v1.Provenance
+	10, // 18: calandria.v1.StatesAdvisory.advisory:type_name -> calandria.v1.Advisory
+	12, // 19: calandria.v1.StateFailure.reason:type_name -> calandria.v1.Reason
+	13, // 20: calandria.v1.StateFailure.violations:type_name -> calandria.v1.Violation
+	1,  // 21: calandria.v1.SteamService.GetSteamState:input_type -> calandria.v1.GetSteamStateRequest
+	3,  // 22: calandria.v1.SteamService.GetSaturation:input_type -> calandria.v1.GetSaturationRequest
+	5,  // 23: calandria.v1.SteamService.ComputeSteamStates:input_type -> calandria.v1.ComputeSteamStatesRequest
+	2,  // 24: calandria.v1.SteamService.GetSteamState:output_type -> calandria.v1.SteamState
+	4,  // 25: calandria.v1.SteamService.GetSaturation:output_type -> calandria.v1.Saturation
+	6,  // 26: calandria.v1.SteamService.ComputeSteamStates:output_type -> calandria.v1.SteamStates
+	24, // [24:27] is the sub-list for method output_type
+	21, // [21:24] is the sub-list for method input_type
+	21, // [21:21] is the sub-list for extension type_name
+	21, // [21:21] is the sub-list for extension extendee
+	0,  // [0:21] is the sub-list for field type_name
 }
 
 func init() { file_calandria_v1_steam_proto_init() }
@@ -601,6 +1228,7 @@ func file_calandria_v1_steam_proto_init() {
 	if File_calandria_v1_steam_proto != nil {
 		return
 	}
+	file_calandria_v1_error_proto_init()
 	file_calandria_v1_provenance_proto_init()
 	file_calandria_v1_steam_proto_msgTypes[0].OneofWrappers = []any{}
 	file_calandria_v1_steam_proto_msgTypes[1].OneofWrappers = []any{}
@@ -611,7 +1239,7 @@ func file_calandria_v1_steam_proto_init() {
 			GoPackagePath: reflect.TypeOf(x{}).PkgPath(),
 			RawDescriptor: unsafe.Slice(unsafe.StringData(file_calandria_v1_steam_proto_rawDesc), len(file_calandria_v1_steam_proto_rawDesc)),
 			NumEnums:      1,
-			NumMessages:   4,
+			NumMessages:   9,
 			NumExtensions: 0,
 			NumServices:   1,
 		},

@@ -19,8 +19,9 @@ import (
 const _ = grpc.SupportPackageIsVersion9
 
 const (
-	SteamService_GetSteamState_FullMethodName = "/calandria.v1.SteamService/GetSteamState"
-	SteamService_GetSaturation_FullMethodName = "/calandria.v1.SteamService/GetSaturation"
+	SteamService_GetSteamState_FullMethodName      = "/calandria.v1.SteamService/GetSteamState"
+	SteamService_GetSaturation_FullMethodName      = "/calandria.v1.SteamService/GetSaturation"
+	SteamService_ComputeSteamStates_FullMethodName = "/calandria.v1.SteamService/ComputeSteamStates"
 )
 
 // SteamServiceClient is the client API for SteamService service.
@@ -30,11 +31,15 @@ const (
 // SteamService answers for pure water and steam.
 type SteamServiceClient interface {
 	// GetSteamState returns one state from a pair of its coordinates: pressure
-	// and temperature, or dryness with either.
+	// with temperature, enthalpy, entropy or dryness; enthalpy with entropy; or
+	// temperature with dryness.
 	GetSteamState(ctx context.Context, in *GetSteamStateRequest, opts ...grpc.CallOption) (*SteamState, error)
 	// GetSaturation returns both saturated phases and the latent heat at a
 	// pressure or at a temperature.
 	GetSaturation(ctx context.Context, in *GetSaturationRequest, opts ...grpc.CallOption) (*Saturation, error)
+	// ComputeSteamStates returns many states, each as GetSteamState would, in
+	// packed columns.
+	ComputeSteamStates(ctx context.Context, in *ComputeSteamStatesRequest, opts ...grpc.CallOption) (*SteamStates, error)
 }
 
 type steamServiceClient struct {
@@ -65,6 +70,16 @@ func (c *steamServiceClient) GetSaturation(ctx context.Context, in *GetSaturatio
 	return out, nil
 }
 
+func (c *steamServiceClient) ComputeSteamStates(ctx context.Context, in *ComputeSteamStatesRequest, opts ...grpc.CallOption) (*SteamStates, error) {
+	cOpts := append([]grpc.CallOption{grpc.StaticMethod()}, opts...)
+	out := new(SteamStates)
+	err := c.cc.Invoke(ctx, SteamService_ComputeSteamStates_FullMethodName, in, out, cOpts...)
+	if err != nil {
+		return nil, err
+	}
+	return out, nil
+}
+
 // SteamServiceServer is the server API for SteamService service.
 // All implementations must embed UnimplementedSteamServiceServer
 // for forward compatibility.
@@ -72,11 +87,15 @@ func (c *steamServiceClient) GetSaturation(ctx context.Context, in *GetSaturatio
 // SteamService answers for pure water and steam.
 type SteamServiceServer interface {
 	// GetSteamState returns one state from a pair of its coordinates: pressure
-	// and temperature, or dryness with either.
+	// with temperature, enthalpy, entropy or dryness; enthalpy with entropy; or
+	// temperature with dryness.
 	GetSteamState(context.Context, *GetSteamStateRequest) (*SteamState, error)
 	// GetSaturation returns both saturated phases and the latent heat at a
 	// pressure or at a temperature.
 	GetSaturation(context.Context, *GetSaturationRequest) (*Saturation, error)
+	// ComputeSteamStates returns many states, each as GetSteamState would, in
+	// packed columns.
+	ComputeSteamStates(context.Context, *ComputeSteamStatesRequest) (*SteamStates, error)
 	mustEmbedUnimplementedSteamServiceServer()
 }
 
@@ -92,6 +111,9 @@ func (UnimplementedSteamServiceServer) GetSteamState(context.Context, *GetSteamS
 }
 func (UnimplementedSteamServiceServer) GetSaturation(context.Context, *GetSaturationRequest) (*Saturation, error) {
 	return nil, status.Error(codes.Unimplemented, "method GetSaturation not implemented")
+}
+func (UnimplementedSteamServiceServer) ComputeSteamStates(context.Context, *ComputeSteamStatesRequest) (*SteamStates, error) {
+	return nil, status.Error(codes.Unimplemented, "method ComputeSteamStates not implemented")
 }
 func (UnimplementedSteamServiceServer) mustEmbedUnimplementedSteamServiceServer() {}
 func (UnimplementedSteamServiceServer) testEmbeddedByValue()                      {}
@@ -150,6 +172,24 @@ func _SteamService_GetSaturation_Handler(srv interface{}, ctx context.Context, d
 	return interceptor(ctx, in, info, handler)
 }
 
+func _SteamService_ComputeSteamStates_Handler(srv interface{}, ctx context.Context, dec func(interface{}) error, interceptor grpc.UnaryServerInterceptor) (interface{}, error) {
+	in := new(ComputeSteamStatesRequest)
+	if err := dec(in); err != nil {
+		return nil, err
+	}
+	if interceptor == nil {
+		return srv.(SteamServiceServer).ComputeSteamStates(ctx, in)
+	}
+	info := &grpc.UnaryServerInfo{
+		Server:     srv,
+		FullMethod: SteamService_ComputeSteamStates_FullMethodName,
+	}
+	handler := func(ctx context.Context, req interface{}) (interface{}, error) {
+		return srv.(SteamServiceServer).ComputeSteamStates(ctx, req.(*ComputeSteamStatesRequest))
+	}
+	return interceptor(ctx, in, info, handler)
+}
+
 // SteamService_ServiceDesc is the grpc.ServiceDesc for SteamService service.
 // It's only intended for direct use with grpc.RegisterService,
 // and not to be introspected or modified (even as a copy)
@@ -164,6 +204,10 @@ var SteamService_ServiceDesc = grpc.ServiceDesc{
 		{
 			MethodName: "GetSaturation",
 			Handler:    _SteamService_GetSaturation_Handler,
+		},
+		{
+			MethodName: "ComputeSteamStates",
+			Handler:    _SteamService_ComputeSteamStates_Handler,
 		},
 	},
 	Streams:  []grpc.StreamDesc{},

@@ -106,6 +106,33 @@ func local_request_SteamService_GetSaturation_0(ctx context.Context, marshaler r
 	return msg, metadata, err
 }
 
+func request_SteamService_ComputeSteamStates_0(ctx context.Context, marshaler runtime.Marshaler, client extCalandriav1.SteamServiceClient, req *http.Request, pathParams map[string]string) (proto.Message, runtime.ServerMetadata, error) {
+	var (
+		protoReq extCalandriav1.ComputeSteamStatesRequest
+		metadata runtime.ServerMetadata
+	)
+	if err := marshaler.NewDecoder(req.Body).Decode(&protoReq); err != nil && !errors.Is(err, io.EOF) {
+		return nil, metadata, status.Errorf(codes.InvalidArgument, "%v", err)
+	}
+	if req.Body != nil {
+		_, _ = io.Copy(io.Discard, req.Body)
+	}
+	msg, err := client.ComputeSteamStates(ctx, &protoReq, grpc.Header(&metadata.HeaderMD), grpc.Trailer(&metadata.TrailerMD))
+	return msg, metadata, err
+}
+
+func local_request_SteamService_ComputeSteamStates_0(ctx context.Context, marshaler runtime.Marshaler, server extCalandriav1.SteamServiceServer, req *http.Request, pathParams map[string]string) (proto.Message, runtime.ServerMetadata, error) {
+	var (
+		protoReq extCalandriav1.ComputeSteamStatesRequest
+		metadata runtime.ServerMetadata
+	)
+	if err := marshaler.NewDecoder(req.Body).Decode(&protoReq); err != nil && !errors.Is(err, io.EOF) {
+		return nil, metadata, status.Errorf(codes.InvalidArgument, "%v", err)
+	}
+	msg, err := server.ComputeSteamStates(ctx, &protoReq)
+	return msg, metadata, err
+}
+
 // RegisterSteamServiceHandlerServer registers the http handlers for service SteamService to "mux".
 // UnaryRPC     :call SteamServiceServer directly.
 // StreamingRPC :currently unsupported pending https://github.com/grpc/grpc-go/issues/906.
@@ -151,6 +178,26 @@ func RegisterSteamServiceHandlerServer(ctx context.Context, mux *runtime.ServeMu
 			return
 		}
 		forward_SteamService_GetSaturation_0(annotatedContext, mux, outboundMarshaler, w, req, resp, mux.GetForwardResponseOptions()...)
+	})
+	mux.Handle(http.MethodPost, pattern_SteamService_ComputeSteamStates_0, func(w http.ResponseWriter, req *http.Request, pathParams map[string]string) {
+		ctx, cancel := context.WithCancel(req.Context())
+		defer cancel()
+		var stream runtime.ServerTransportStream
+		ctx = grpc.NewContextWithServerTransportStream(ctx, &stream)
+		inboundMarshaler, outboundMarshaler := runtime.MarshalerForRequest(mux, req)
+		annotatedContext, err := runtime.AnnotateIncomingContext(ctx, mux, req, "/calandria.v1.SteamService/ComputeSteamStates", runtime.WithHTTPPathPattern("/v1/steam/states:compute"))
+		if err != nil {
+			runtime.HTTPError(ctx, mux, outboundMarshaler, w, req, err)
+			return
+		}
+		resp, md, err := local_request_SteamService_ComputeSteamStates_0(annotatedContext, inboundMarshaler, server, req, pathParams)
+		md.HeaderMD, md.TrailerMD = metadata.Join(md.HeaderMD, stream.Header()), metadata.Join(md.TrailerMD, stream.Trailer())
+		annotatedContext = runtime.NewServerMetadataContext(annotatedContext, md)
+		if err != nil {
+			runtime.HTTPError(annotatedContext, mux, outboundMarshaler, w, req, err)
+			return
+		}
+		forward_SteamService_ComputeSteamStates_0(annotatedContext, mux, outboundMarshaler, w, req, resp, mux.GetForwardResponseOptions()...)
 	})
 
 	return nil
@@ -226,15 +273,34 @@ func RegisterSteamServiceHandlerClient(ctx context.Context, mux *runtime.ServeMu
 		}
 		forward_SteamService_GetSaturation_0(annotatedContext, mux, outboundMarshaler, w, req, resp, mux.GetForwardResponseOptions()...)
 	})
+	mux.Handle(http.MethodPost, pattern_SteamService_ComputeSteamStates_0, func(w http.ResponseWriter, req *http.Request, pathParams map[string]string) {
+		ctx, cancel := context.WithCancel(req.Context())
+		defer cancel()
+		inboundMarshaler, outboundMarshaler := runtime.MarshalerForRequest(mux, req)
+		annotatedContext, err := runtime.AnnotateContext(ctx, mux, req, "/calandria.v1.SteamService/ComputeSteamStates", runtime.WithHTTPPathPattern("/v1/steam/states:compute"))
+		if err != nil {
+			runtime.HTTPError(ctx, mux, outboundMarshaler, w, req, err)
+			return
+		}
+		resp, md, err := request_SteamService_ComputeSteamStates_0(annotatedContext, inboundMarshaler, client, req, pathParams)
+		annotatedContext = runtime.NewServerMetadataContext(annotatedContext, md)
+		if err != nil {
+			runtime.HTTPError(annotatedContext, mux, outboundMarshaler, w, req, err)
+			return
+		}
+		forward_SteamService_ComputeSteamStates_0(annotatedContext, mux, outboundMarshaler, w, req, resp, mux.GetForwardResponseOptions()...)
+	})
 	return nil
 }
 
 var (
-	pattern_SteamService_GetSteamState_0 = runtime.MustPattern(runtime.NewPattern(1, []int{2, 0, 2, 1, 2, 2}, []string{"v1", "steam", "state"}, ""))
-	pattern_SteamService_GetSaturation_0 = runtime.MustPattern(runtime.NewPattern(1, []int{2, 0, 2, 1, 2, 2}, []string{"v1", "steam", "saturation"}, ""))
+	pattern_SteamService_GetSteamState_0      = runtime.MustPattern(runtime.NewPattern(1, []int{2, 0, 2, 1, 2, 2}, []string{"v1", "steam", "state"}, ""))
+	pattern_SteamService_GetSaturation_0      = runtime.MustPattern(runtime.NewPattern(1, []int{2, 0, 2, 1, 2, 2}, []string{"v1", "steam", "saturation"}, ""))
+	pattern_SteamService_ComputeSteamStates_0 = runtime.MustPattern(runtime.NewPattern(1, []int{2, 0, 2, 1, 2, 2}, []string{"v1", "steam", "states"}, "compute"))
 )
 
 var (
-	forward_SteamService_GetSteamState_0 = runtime.ForwardResponseMessage
-	forward_SteamService_GetSaturation_0 = runtime.ForwardResponseMessage
+	forward_SteamService_GetSteamState_0      = runtime.ForwardResponseMessage
+	forward_SteamService_GetSaturation_0      = runtime.ForwardResponseMessage
+	forward_SteamService_ComputeSteamStates_0 = runtime.ForwardResponseMessage
 )
