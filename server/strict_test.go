@@ -50,7 +50,7 @@ func describedBy(t *testing.T) func(name, text string) error {
 func TestBadInput(t *testing.T) {
 	s := start(t)
 	valid := describedBy(t)
-	const solve, saturation, state = "/v1/effects:solve", "/v1/steam/saturation", "/v1/steam/state"
+	const solve, saturation, state, states = "/v1/effects:solve", "/v1/steam/saturation", "/v1/steam/state", "/v1/steam/states:compute"
 	deep := strings.Repeat("[", 50) + strings.Repeat("]", 50)
 	bomb := strings.Repeat("[", 200_000) + strings.Repeat("]", 200_000)
 	for _, c := range []struct {
@@ -80,7 +80,29 @@ func TestBadInput(t *testing.T) {
 		{"percent", "GET", state + "?pressure_kpa_abs=100&dryness_fraction=95", "", nil, 400, "FIELD_INVALID", []string{"percentage", "0.95"}},
 		{"too hot for saturation", "GET", saturation + "?temperature_c=400", "", nil, 400, "OUTSIDE_CORRELATION", []string{"temperature_c", "degC", "IAPWS"}},
 		{"too cold a pressure", "GET", saturation + "?pressure_kpa_abs=0.1", "", nil, 400, "OUTSIDE_CORRELATION", []string{"0.1", "kPa absolute"}},
-		{"region 3", "GET", state + "?pressure_kpa_abs=30000&temperature_c=400", "", nil, 400, "OUTSIDE_CORRELATION", []string{"Eq. 5"}},
+		{"too much pressure for 900 degC", "GET", state + "?pressure_kpa_abs=60000&temperature_c=900", "", nil, 400, "OUTSIDE_CORRELATION", []string{"60000", "50000 kPa absolute"}},
+		{"all but no pressure", "GET", state + "?pressure_kpa_abs=1e-300&temperature_c=90", "", nil, 400, "OUTSIDE_CORRELATION", []string{"pressure_kpa_abs", "R7-97"}},
+		{"one coordinate", "GET", state + "?entropy_kj_per_kg_k=5", "", nil, 400, "UNDER_SPECIFIED", []string{"pressure_kpa_abs", "enthalpy_kj_per_kg"}},
+		{"a pair that may have two states", "GET", state + "?temperature_c=50&enthalpy_kj_per_kg=209", "", nil, 400, "FIELD_INVALID", []string{"given with temperature_c", "enthalpy_kj_per_kg with entropy_kj_per_kg_k"}},
+		{"three coordinates", "GET", state + "?pressure_kpa_abs=100&enthalpy_kj_per_kg=209&entropy_kj_per_kg_k=1", "", nil, 400, "OVER_SPECIFIED", []string{"Drop any one"}},
+		{"enthalpy in J/kg", "GET", state + "?pressure_kpa_abs=100&enthalpy_kj_per_kg=2700000", "", nil, 400, "FIELD_INVALID", []string{"at most 10000 kJ/kg"}},
+		{"enthalpy of no state", "GET", state + "?pressure_kpa_abs=100&enthalpy_kj_per_kg=9000", "", nil, 400, "OUTSIDE_CORRELATION", []string{"enthalpy_kj_per_kg", "at this pressure", "kJ/kg"}},
+		{"entropy of no state", "GET", state + "?pressure_kpa_abs=100&entropy_kj_per_kg_k=-5", "", nil, 400, "OUTSIDE_CORRELATION", []string{"entropy_kj_per_kg_k", "kJ/(kg K)"}},
+		{"no such enthalpy at an entropy", "GET", state + "?enthalpy_kj_per_kg=9000&entropy_kj_per_kg_k=5", "", nil, 400, "OUTSIDE_CORRELATION", []string{"at this entropy"}},
+		{"no columns", "POST", states, `{}`, nil, 400, "UNDER_SPECIFIED", []string{"pressure_kpa_abs"}},
+		{"empty columns", "POST", states, `{"pressure_kpa_abs":[],"temperature_c":[]}`, nil, 400, "UNDER_SPECIFIED", []string{"pressure_kpa_abs"}},
+		{"one column", "POST", states, `{"pressure_kpa_abs":[1,2]}`, nil, 400, "UNDER_SPECIFIED", []string{"temperature_c"}},
+		{"three columns", "POST", states, `{"pressure_kpa_abs":[1],"temperature_c":[1],"enthalpy_kj_per_kg":[1]}`, nil, 400, "OVER_SPECIFIED", []string{"Drop any one"}},
+		{"columns that make no pair", "POST", states, `{"temperature_c":[1],"entropy_kj_per_kg_k":[1]}`, nil, 400, "FIELD_INVALID", []string{"given with temperature_c"}},
+		{"columns of two lengths", "POST", states, `{"pressure_kpa_abs":[1,2],"temperature_c":[1]}`, nil, 400, "FIELD_INVALID", []string{"temperature_c is 1 long", "as many as pressure_kpa_abs has, 2"}},
+		{"number for a column", "POST", states, `{"pressure_kpa_abs":5,"temperature_c":[1]}`, nil, 400, "FIELD_INVALID", []string{"a list in square brackets"}},
+		{"object for a column", "POST", states, `{"pressure_kpa_abs":{"a":1},"temperature_c":[1]}`, nil, 400, "FIELD_INVALID", []string{"a list in square brackets"}},
+		{"text in a column", "POST", states, `{"pressure_kpa_abs":[1,"x",3],"temperature_c":[1,2,3]}`, nil, 400, "FIELD_INVALID", []string{"pressure_kpa_abs[1]", "kPa absolute"}},
+		{"null in a column", "POST", states, `{"pressure_kpa_abs":[1,null],"temperature_c":[1,2]}`, nil, 400, "FIELD_INVALID", []string{"pressure_kpa_abs[1]"}},
+		{"unknown column wanted", "POST", states, `{"pressure_kpa_abs":[1],"temperature_c":[1],"want":["density"]}`, nil, 400, "FIELD_INVALID", []string{"want[0]", "density_kg_per_m3"}},
+		{"column wanted twice", "POST", states, `{"pressure_kpa_abs":[1],"temperature_c":[1],"want":["region","region"]}`, nil, 400, "FIELD_INVALID", []string{"want", "each once"}},
+		{"too many states", "POST", states, `{"pressure_kpa_abs":[1` + strings.Repeat(",1", 20_000) + `],"temperature_c":[1` + strings.Repeat(",1", 20_000) + `]}`, nil, 400, "FIELD_INVALID", []string{"at most 20000 items"}},
+		{"states by GET", "GET", states + "?pressure_kpa_abs=1&temperature_c=1", "", nil, 405, "METHOD_NOT_ALLOWED", nil},
 		{"group for a value", "GET", solve + "?feed=1", "", nil, 400, "FIELD_INVALID", []string{"feed.flow_kg_per_h"}},
 		{"below a value", "GET", solve + "?economy.x=1", "", nil, 400, "FIELD_INVALID", []string{"Nothing stands below"}},
 		{"table by GET", "GET", solve + "?custom_liquor.enthalpy_table.rows.solids_fraction=1", "", nil, 400, "FIELD_INVALID", []string{"POST"}},
@@ -195,7 +217,10 @@ func TestAnswersAreAsDescribed(t *testing.T) {
 		{"EffectSolution", "POST", "/v1/effects:solve", `{` + good + `}`},
 		{"SteamState", "GET", "/v1/steam/state?pressure_kpa_abs=100&temperature_c=20", ""},
 		{"SteamState", "GET", "/v1/steam/state?pressure_kpa_abs=100&dryness_fraction=0.5", ""},
+		{"SteamState", "GET", "/v1/steam/state?enthalpy_kj_per_kg=2087.6&entropy_kj_per_kg_k=4.412", ""},
+		{"SteamStates", "POST", "/v1/steam/states:compute", `{"pressure_kpa_abs":[100,-1,22064],"enthalpy_kj_per_kg":[2000,3000,2087.5]}`},
 		{"Saturation", "GET", "/v1/steam/saturation?temperature_c=60", ""},
+		{"Saturation", "GET", "/v1/steam/saturation?temperature_c=373.946", ""},
 		{"Engine", "GET", "/v1/engine", ""},
 		{"Verification", "GET", "/v1/engine/verification", ""},
 	} {

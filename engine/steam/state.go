@@ -86,7 +86,7 @@ func Models() []evidence.Model {
 // TransportModels returns what viscosity, conductivity and surface tension rest
 // on.
 func TransportModels() []evidence.Model {
-	const transportRange = "0 to 900 degC up to 100 MPa; 800 to 900 degC up to 50 MPa, by the density's own range"
+	const transportRange = "0 to 800 degC up to 100 MPa, 800 to 900 degC up to 50 MPa"
 	return []evidence.Model{{
 		ID: "iapws-r12-08", Revision: "R12-08, industrial use: without critical enhancement",
 		Source:     "IAPWS R12-08, Formulation 2008 for the viscosity of ordinary water substance",

@@ -39,7 +39,7 @@ func SteamStatesRequest(m *calandriav1.ComputeSteamStatesRequest) (*SteamColumns
 	c := &SteamColumns{pair: chosen, first: columns[chosen.first], second: columns[chosen.second], remarked: map[string]*calandriav1.StatesAdvisory{}}
 	if len(c.first) != len(c.second) {
 		return nil, &fault.Invalid{
-			Field: chosen.second, Value: fmt.Sprintf("%d numbers long", len(c.second)),
+			Field: chosen.second, Value: fmt.Sprintf("%d long", len(c.second)),
 			Limit:  fmt.Sprintf("as many as %s has, %d", chosen.first, len(c.first)),
 			WayOut: "give both numbers of every state",
 		}
