@@ -267,7 +267,7 @@ func TestStatesAreSingleStates(t *testing.T) {
 		"h and s":        {EnthalpyKjPerKg: draw(-100, 5000, states), EntropyKjPerKgK: draw(-1, 12, states)},
 		"p and dryness":  {PressureKpaAbs: draw(1, 25_000, states), DrynessFraction: draw(-0.1, 1.1, states)},
 		"T and dryness":  {TemperatureC: draw(-10, 400, states), DrynessFraction: draw(-0.1, 1.1, states)},
-		"in the jumps":   {PressureKpaAbs: []float64{60_000, 60_000}, EnthalpyKjPerKg: []float64{1614.7, 1614.75}},
+		"in the jumps":   {PressureKpaAbs: []float64{20_000, 60_000, 60_000, 49_000}, EnthalpyKjPerKg: []float64{1645.953, 1567.405, 2658.49, 3930.65}},
 		"no number":      {PressureKpaAbs: []float64{math.NaN(), 100, math.Inf(1)}, TemperatureC: []float64{100, math.Inf(-1), 100}},
 		"where both are": {PressureKpaAbs: []float64{22_064}, TemperatureC: []float64{373.946}},
 	} {
@@ -290,6 +290,13 @@ func TestStatesAreSingleStates(t *testing.T) {
 			return &column[i]
 		}
 		count := max(len(request.GetPressureKpaAbs()), len(request.GetTemperatureC()), len(request.GetEnthalpyKjPerKg()))
+		remarks := 0
+		for _, group := range answer.GetAdvisories() {
+			remarks += len(group.GetIndex())
+		}
+		if name == "in the jumps" && remarks != count {
+			t.Errorf("%s: %d remarks", name, remarks)
+		}
 		if len(rows)+len(failures) != count {
 			t.Errorf("%s: %d answers and %d failures of %d", name, len(rows), len(failures), count)
 		}
