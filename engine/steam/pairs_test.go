@@ -2,7 +2,6 @@ package steam
 
 import (
 	"flag"
-	"fmt"
 	"math"
 	"math/rand/v2"
 	"testing"
@@ -154,8 +153,8 @@ func TestRoundTrips(t *testing.T) {
 			}
 		}
 		for i, pair := range pairs {
-			t.Log(fmt.Sprintf("region %d  %-18s  %d points  %d refused  %d in another region  %d off by more  %d in a jump  worst %.1e  volumes apart %.1e",
-				region, pair.name, drawn, refused[i], elsewhere[i], off[i], jumps[i], worst[i], apart[i]))
+			t.Logf("region %d  %-18s  %d points  %d refused  %d in another region  %d off by more  %d in a jump  worst %.1e  volumes apart %.1e",
+				region, pair.name, drawn, refused[i], elsewhere[i], off[i], jumps[i], worst[i], apart[i])
 		}
 	}
 }

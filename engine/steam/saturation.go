@@ -178,7 +178,7 @@ func equation30(t float64) (p, slope float64) {
 	apart := t - n[9]
 	theta := t + n[8]/apart
 	thetaByT := 1 - n[8]/(apart*apart)
-	a, b, _, x := root30(theta)
+	a, b, x := root30(theta)
 	// x is the root of a x^2 + b x + c = 0, whose coefficients move with theta.
 	aByTheta, bByTheta, cByTheta := 2*theta+n[0], 2*n[2]*theta+n[3], 2*n[5]*theta+n[6]
 	xByTheta := -(aByTheta*x*x + bByTheta*x + cByTheta) / (2*a*x + b)
@@ -189,7 +189,7 @@ func equation30(t float64) (p, slope float64) {
 // saturationPressure returns p of Eq. 30 in Pa at t in K.
 func saturationPressure(t float64) float64 {
 	n := &release.Saturation
-	_, _, _, x := root30(t + n[8]/(t-n[9]))
+	_, _, x := root30(t + n[8]/(t-n[9]))
 	square := x * x
 	return square * square * 1e6
 }
@@ -197,13 +197,13 @@ func saturationPressure(t float64) float64 {
 // root30 solves the quadratic equation in the fourth root of p that Eqs. 30 and
 // 31 share. The conversions keep a compiler
 // from fusing, so that every machine gives the same digits.
-func root30(theta float64) (a, b, c, x float64) {
+func root30(theta float64) (a, b, x float64) {
 	n := &release.Saturation
 	a = float64((theta+n[0])*theta) + n[1]
 	b = float64((float64(n[2]*theta)+n[3])*theta) + n[4]
-	c = float64((float64(n[5]*theta)+n[6])*theta) + n[7]
+	c := float64((float64(n[5]*theta)+n[6])*theta) + n[7]
 	root := math.Sqrt(float64(b*b) - float64(4*a*c))
-	return a, b, c, 2 * c / (root - b)
+	return a, b, 2 * c / (root - b)
 }
 
 // saturationTemperature returns t of Eq. 31 in K at p in Pa.

@@ -36,7 +36,10 @@ func SteamStatesRequest(m *calandriav1.ComputeSteamStatesRequest) (*SteamColumns
 	if err != nil {
 		return nil, err
 	}
-	c := &SteamColumns{pair: chosen, first: columns[chosen.first], second: columns[chosen.second], remarked: map[string]*calandriav1.StatesAdvisory{}}
+	c := &SteamColumns{
+		pair: chosen, first: columns[chosen.first], second: columns[chosen.second],
+		answer: nil, put: nil, remarked: map[string]*calandriav1.StatesAdvisory{},
+	}
 	if len(c.first) != len(c.second) {
 		return nil, &fault.Invalid{
 			Field: chosen.second, Value: fmt.Sprintf("%d long", len(c.second)),
