@@ -113,6 +113,27 @@ func BenchmarkSteam(b *testing.B) {
 		b.Run(c.name+"/enthalpy", func(b *testing.B) {
 			each(b, func(i int) float64 { return must(Enthalpy(s.p[i], s.t[i])) })
 		})
+		b.Run(c.name+"/enthalpies-one-by-one", func(b *testing.B) {
+			h := make([]quantity.Enthalpy, inputs)
+			b.ReportAllocs()
+			for i := 0; i < b.N; i += inputs { // an operation is a point
+				for j := range h {
+					var err error
+					if h[j], err = Enthalpy(s.p[j], s.t[j]); err != nil {
+						b.Fatal(err)
+					}
+				}
+			}
+		})
+		b.Run(c.name+"/enthalpies-in-a-batch", func(b *testing.B) {
+			h := make([]quantity.Enthalpy, inputs)
+			b.ReportAllocs()
+			for i := 0; i < b.N; i += inputs { // an operation is a point
+				if _, err := Enthalpies(h, s.p[:], s.t[:]); err != nil {
+					b.Fatal(err)
+				}
+			}
+		})
 		b.Run(c.name+"/density", func(b *testing.B) {
 			each(b, func(i int) float64 { return must(Density(s.p[i], s.t[i])) })
 		})

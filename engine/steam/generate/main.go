@@ -33,7 +33,13 @@ func run() error {
 	if err != nil {
 		return err
 	}
-	return os.WriteFile("kernels_generated.go", text, 0o644)
+	assembly, declarations := lanes(list)
+	for name, text := range map[string][]byte{"kernels_generated.go": text, "lanes_generated_amd64.s": assembly, "lanes_generated_amd64.go": declarations} {
+		if err := os.WriteFile(name, text, 0o644); err != nil {
+			return err
+		}
+	}
+	return nil
 }
 
 // number writes a constant so that it reads back as the same one.
