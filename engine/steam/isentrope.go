@@ -49,6 +49,7 @@ func isentropeEnds(s float64) (low, high float64, err error) {
 	if !(s >= coldHigh && s <= hot) {
 		return 0, 0, outside("entropy", "J/(kg K)", s, coldHigh, hot)
 	}
+	enough := roundingOf(&entropy, s) / 10
 	// The cold end: superheated vapour, wet steam, liquid.
 	start := lineStart()
 	liquid, _ := region1EntropyHeat(start, coldest)
@@ -57,11 +58,11 @@ func isentropeEnds(s float64) (low, high float64, err error) {
 	case s >= vapourLow:
 		low = lowestPressure
 	case s > vapour:
-		_, low = falling(func(p float64) float64 { v, _ := entropy2(p, coldest); return v - s }, lowestPressure, start)
+		_, low = falling(func(p float64) float64 { v, _ := entropy2(p, coldest); return v - s }, lowestPressure, start, enough)
 	case s >= liquid:
 		low = start
 	default:
-		_, low = falling(func(p float64) float64 { v, _ := region1EntropyHeat(p, coldest); return v - s }, start, highestPressure)
+		_, low = falling(func(p float64) float64 { v, _ := region1EntropyHeat(p, coldest); return v - s }, start, highestPressure, enough)
 	}
 	// The hot end: region 2 above 50 MPa, region 5 below.
 	most, _ := entropy2(highestPressure, hottest2)
@@ -71,30 +72,52 @@ func isentropeEnds(s float64) (low, high float64, err error) {
 	case s <= most:
 		high = highestPressure
 	case s <= step:
-		high, _ = falling(func(p float64) float64 { v, _ := entropy2(p, hottest2); return v - s }, highest5, highestPressure)
+		high, _ = falling(func(p float64) float64 { v, _ := entropy2(p, hottest2); return v - s }, highest5, highestPressure, enough)
 	case s <= hotStep:
 		high = highest5
 	default:
-		high, _ = falling(func(p float64) float64 { v, _ := entropy5(p, hottest5); return v - s }, lowestPressure, highest5)
+		high, _ = falling(func(p float64) float64 { v, _ := entropy5(p, hottest5); return v - s }, lowestPressure, highest5, enough)
 	}
 	return low, high, nil
 }
 
 // falling closes in, between low and high, on the place where f passes from
-// above 0 to below: it returns both sides, each next to the other.
-func falling(f func(p float64) float64, low, high float64) (above, below float64) {
-	if f(low) <= 0 {
+// above 0 to below: it returns both sides, or twice where f counts as 0. It is
+// the false-position method in the logarithm, with the Illinois rule.
+func falling(f func(p float64) float64, low, high, enough float64) (above, below float64) {
+	left, right := f(low), f(high)
+	if left <= enough {
 		return low, low
 	}
+	if right >= -enough {
+		return high, high
+	}
+	from, to := math.Log(low), math.Log(high)
+	side := 0
 	for range mostSteps {
-		middle := math.Sqrt(low * high)
-		if f(middle) >= 0 {
-			low = middle
-		} else {
-			high = middle
+		middle := (from*right - to*left) / (right - left)
+		if !(middle > from && middle < to) {
+			middle = (from + to) / 2
+		}
+		switch at := f(math.Exp(middle)); {
+		case math.Abs(at) <= enough:
+			p := math.Exp(middle)
+			return p, p
+		case at > 0:
+			from, left = middle, at
+			if side == 1 {
+				right /= 2
+			}
+			side = 1
+		default:
+			to, right = middle, at
+			if side == -1 {
+				left /= 2
+			}
+			side = -1
 		}
 	}
-	return low, high
+	return math.Exp(from), math.Exp(to)
 }
 
 // climb walks an isentrope from bottom to top until it has h: Newton's method in
@@ -105,6 +128,11 @@ func climb(h, s float64, bottom, top State) (State, error) {
 	at := top
 	if math.Abs(bottom.Enthalpy-h) < math.Abs(top.Enthalpy-h) {
 		at = bottom
+	}
+	if p := pressureNear(h, s); p > float64(bottom.Pressure) && p < float64(top.Pressure) {
+		if near, err := alongIsobar(&entropy, p, s); err == nil {
+			at = near
+		}
 	}
 	for range 2 * mostSteps {
 		miss := at.Enthalpy - h
@@ -119,7 +147,13 @@ func climb(h, s float64, bottom, top State) (State, error) {
 		p, from, to := float64(at.Pressure), float64(low.Pressure), float64(high.Pressure)
 		next := p - miss/at.Volume
 		if at.Region != 1 {
-			next = p * math.Exp(max(min(-miss/(at.Volume*p), 50), -50))
+			scale := at.Enthalpy - vapourBase
+			step := -miss / (at.Volume * p)
+			if scale > 0 && h > vapourBase && at.Region != 4 {
+				// Of an ideal gas, enthalpy above its base is a power of pressure.
+				step = math.Log((h-vapourBase)/scale) * scale / (at.Volume * p)
+			}
+			next = p * math.Exp(max(min(step, 50), -50))
 		}
 		if !(next > from && next < to) {
 			next = math.Sqrt(from * to)
@@ -149,6 +183,35 @@ func climb(h, s float64, bottom, top State) (State, error) {
 		return State{}, outside("temperature", "K", float64(at.Temperature), coldest, hottest5)
 	}
 	return at, nil
+}
+
+// Vapour of little pressure has some vapourBase + vapourHeat T of enthalpy, in
+// J/kg and K; water has some waterHeat from the triple point on.
+const (
+	vapourBase, vapourHeat = 1.98e6, 1.86e3
+	waterHeat              = 4.2e3
+)
+
+// pressureNear guesses the pressure in Pa with h and s: of vapour like an ideal
+// gas, or of wet steam, where h - T s is the same as of the liquid.
+func pressureNear(h, s float64) float64 {
+	if t := (h - vapourBase) / vapourHeat; t > coldest {
+		const thin = 1e4 // Pa
+		standard, _ := entropy2(thin, min(t, hottest2))
+		p := thin * math.Exp((standard-s)/gasConstant)
+		if t > critical || p < saturationPressure(t) {
+			return p
+		}
+	}
+	t := 400.0
+	for range 5 {
+		liquid := waterHeat * math.Log(t/coldest)
+		t += (h - t*s - waterHeat*(t-coldest) + t*liquid) / (s - liquid)
+		if !(t > coldest && t < critical) {
+			return 0
+		}
+	}
+	return saturationPressure(t)
 }
 
 // atJumps returns near itself; but near to where two regions meet it lets the
