@@ -99,5 +99,5 @@ func middle(at float64, first, last int) int {
 
 // parabola goes through values at -1, 0 and 1.
 func parabola(at, before, middle, after float64) float64 {
-	return middle + at/2*(after-before+at*(after+before-2*middle))
+	return middle + float64(at/2*(after-before+float64(at*(after+before-2*middle))))
 }

@@ -13,9 +13,6 @@ import (
 // enthalpy rises with pressure, dh = v dp, so that there is one such state at
 // most. Where none is it refuses with *fault.Range.
 func AtEnthalpyEntropy(h quantity.Enthalpy, s quantity.Entropy) (State, error) {
-	if math.IsNaN(float64(h)) || math.IsInf(float64(h), 0) {
-		return State{}, outside("enthalpy", "J/kg", float64(h), math.Inf(-1), math.Inf(1))
-	}
 	low, high, err := isentropeEnds(float64(s))
 	if err != nil {
 		return State{}, err
@@ -28,7 +25,7 @@ func AtEnthalpyEntropy(h quantity.Enthalpy, s quantity.Entropy) (State, error) {
 	if err != nil {
 		return State{}, err
 	}
-	tolerance := roundingOf(&enthalpy, float64(h))
+	tolerance := roundingOf(&enthalpy, max(math.Abs(bottom.Enthalpy), math.Abs(top.Enthalpy)))
 	if !(float64(h) >= bottom.Enthalpy-tolerance && float64(h) <= top.Enthalpy+tolerance) {
 		return State{}, &fault.Range{
 			Quantity: "enthalpy", Unit: "J/kg", Source: "IAPWS R7-97(2012) at this entropy",
@@ -219,23 +216,23 @@ func pressureNear(h, s float64) float64 {
 func atJumps(h, s float64, near State) (State, error) {
 	const reach = 1.0 // K: more than any jump
 	p, t := float64(near.Pressure), float64(near.Temperature)
-	close := func(edge float64) bool { return math.Abs(t-edge) < reach }
+	beside := func(edge float64) bool { return math.Abs(t-edge) < reach }
 	switch {
 	case near.Region == 4:
-		if near.Neighbour = 0; close(regionsEnd) {
+		if near.Neighbour = 0; beside(regionsEnd) {
 			return wetAtJoint(h, s, near), nil
 		}
 		return near, nil
-	case near.Region == 5 || near.Region == 2 && close(hottest2) && p <= highest5:
-		if close(hottest2) {
+	case near.Region == 5 || near.Region == 2 && beside(hottest2) && p <= highest5:
+		if beside(hottest2) {
 			lower, higher := solve2(h, s, near), solve5(h, s, near)
 			return choose(h, s, near, lower, higher, lower.Temperature <= hottest2, higher.Temperature > hottest2)
 		}
-	case near.Region == 1 && close(regionsEnd) && p > lineJoint()*0.99, near.Region == 3 && close(regionsEnd) && 1/near.Volume > criticalDensity:
+	case near.Region == 1 && beside(regionsEnd) && p > lineJoint()*0.99, near.Region == 3 && beside(regionsEnd) && 1/near.Volume > criticalDensity:
 		lower, higher := solve1(h, s, near), solve3(h, s, near)
 		return choose(h, s, near, lower, higher, lower.Temperature <= regionsEnd, higher.Temperature > regionsEnd)
 	case (near.Region == 2 || near.Region == 3) && p > lineJoint()*0.99:
-		if end := boundary23Temperature(p); close(end) {
+		if end := boundary23Temperature(p); beside(end) {
 			lower, higher := solve2(h, s, near), solve3(h, s, near)
 			return choose(h, s, near, lower, higher,
 				float64(lower.Pressure) <= boundary23(float64(lower.Temperature)),
@@ -256,7 +253,7 @@ func choose(h, s float64, near, lower, higher State, lowerInside, higherInside b
 	case higherInside && !lowerInside:
 		return higher, nil
 	case !meets(lower):
-		return State{}, unfound(near.Enthalpy - h)
+		return State{}, unfound((near.Enthalpy-h)/max(math.Abs(h), enthalpy.scale), "enthalpy at this entropy")
 	case higherInside == lowerInside:
 		lower.Neighbour = higher.Region
 	}

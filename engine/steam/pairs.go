@@ -34,11 +34,11 @@ func Temperature(p quantity.Pressure, h quantity.Enthalpy) (quantity.Temperature
 		}
 		if h < halfway {
 			t := backwardTemperature1ByEnthalpy(float64(p), float64(h))
-			if t > coldest+clear && t < end-clear {
+			if t > coldest+margin && t < end-margin {
 				at, cp := region1EnthalpyHeat(float64(p), t)
 				t -= (at - float64(h)) / cp
 				miss := region1Enthalpy(float64(p), t) - float64(h)
-				if t -= miss / cp; math.Abs(miss) < near && t < end-clear {
+				if t -= miss / cp; math.Abs(miss) < near && t < end-margin {
 					return quantity.Temperature(t), nil
 				}
 			}
@@ -47,11 +47,11 @@ func Temperature(p quantity.Pressure, h quantity.Enthalpy) (quantity.Temperature
 				end = boundary23Temperature(float64(p))
 			}
 			t := vapourStart(float64(p), float64(h))
-			if t > end+clear && t < hottest2-clear {
+			if t > end+margin && t < hottest2-margin {
 				at, cp := region2EnthalpyHeat(float64(p), t)
 				t -= (at - float64(h)) / cp
 				miss := region2Enthalpy(float64(p), t) - float64(h)
-				if t -= miss / cp; math.Abs(miss) < near && t > end+clear {
+				if t -= miss / cp; math.Abs(miss) < near && t > end+margin {
 					return quantity.Temperature(t), nil
 				}
 			}
@@ -80,7 +80,7 @@ func denseTemperature(p, h float64) (t float64, ok bool) {
 		rho -= (missP*a.hByT - miss*a.pByT) / determinant
 		t -= (a.pByRho*miss - a.hByRho*missP) / determinant
 		if math.Abs(missP) <= enough*p && math.Abs(miss) <= enough*math.Abs(h) {
-			return t, t > regionsEnd+clear && t < boundary23Temperature(p)-clear && rho > thinnest && rho < densest
+			return t, t > regionsEnd+margin && t < boundary23Temperature(p)-margin && rho > thinnest && rho < densest
 		}
 		if step > 1 || !(rho > thinnest && rho < densest && t > regionsEnd && t < hottest3) {
 			return 0, false
@@ -89,13 +89,14 @@ func denseTemperature(p, h float64) (t float64, ok bool) {
 }
 
 const (
-	fastLowest, fastHighest = 700.0, 16.5e6 // Pa
+	// Between these pressures, in Pa, the saturation line ends regions 1 and 2.
+	fastLowest, fastHighest = 700.0, 16.53e6
 	// halfway lies between the enthalpies of liquid of region 1 and of vapour of
 	// region 2 at any pressure, in J/kg.
 	halfway = 2e6
-	// clear is more than the backward equations of regions 1 and 2 are off by,
+	// margin is more than the backward equations of regions 1 and 2 are off by,
 	// in K: 25 mK by IAPWS R7-97(2012) section 5.2.
-	clear = 0.1
+	margin = 0.1
 	// near is a miss in J/kg after one step that another one takes to rounding.
 	near = 1.0
 )
@@ -227,7 +228,7 @@ func alongIsobar(c *coordinate, p, value float64) (State, error) {
 		return State{}, outside("pressure", "Pa", p, lowestPressure, highestPressure)
 	}
 	if math.IsNaN(value) || math.IsInf(value, 0) {
-		return State{}, &fault.Range{Quantity: c.name, Unit: c.unit, Source: "IAPWS R7-97(2012)", Value: value, Min: math.Inf(-1), Max: math.Inf(1)}
+		return State{}, c.outsideAt(p, value)
 	}
 	switch {
 	case p < lineStart():
@@ -394,11 +395,11 @@ func denseState(c *coordinate, p, value, end float64) (State, error) {
 	if !ok || !one && dense != (rho > criticalDensity) {
 		rho, t, ok = c.bracket3(p, value, low, high, dense)
 	}
-	if !ok {
-		return State{}, unfound(p)
-	}
 	s := State{Pressure: quantity.Pressure(p), Temperature: quantity.Temperature(t)}
 	fill3(&s, rho, t)
+	if !ok {
+		return State{}, unfound((c.of(&s)-value)/max(math.Abs(value), c.scale), c.name+" at this pressure")
+	}
 	s.Phase = phaseOf(p, t, dense)
 	return s, nil
 }
@@ -407,14 +408,14 @@ func denseState(c *coordinate, p, value, end float64) (State, error) {
 // method, which stays regular at the critical point, from the start that the
 // backward equations give. low and high bound the temperature.
 func (c *coordinate) polish3(p, value, low, high float64) (rho, t float64, ok bool) {
-	const steps, margin, tolerance = 20, 1e-6, 1e-12
+	const steps, beyond, tolerance = 20, 1e-6, 1e-12
 	rho, t = c.start3(p, value)
 	for range steps {
 		a := region3(rho, t)
 		at, byRho, byT := c.in3(&a)
 		missP, miss := a.p-p, at-value
 		if math.Abs(missP) <= tolerance*p && math.Abs(miss) <= tolerance*max(math.Abs(value), c.scale) {
-			return rho, t, t >= low-margin && t <= high+margin && a.pByRho >= 0
+			return rho, t, t >= low-beyond && t <= high+beyond && a.pByRho >= 0
 		}
 		determinant := a.pByRho*byT - a.pByT*byRho
 		rho -= (missP*byT - miss*a.pByT) / determinant

@@ -158,3 +158,21 @@ func TestRoundTrips(t *testing.T) {
 		}
 	}
 }
+
+// TestTemperatureAlone: the quick door answers what the whole one does, at
+// random pressures and enthalpies, wet steam and refusals among them, and where
+// regions 1, 2, 3 and wet steam meet.
+func TestTemperatureAlone(t *testing.T) {
+	r := rand.New(rand.NewPCG(8, 97))
+	for i := range 200_000 {
+		p, h := math.Pow(10, 2+6.1*r.Float64()), -1e5+8e6*r.Float64()
+		if i%2 == 0 {
+			p, h = 16.4e6+0.2e6*r.Float64(), 1.5e6+1.2e6*r.Float64()
+		}
+		alone, err := Temperature(quantity.Pressure(p), quantity.Enthalpy(h))
+		whole, errWhole := AtPressureEnthalpy(quantity.Pressure(p), quantity.Enthalpy(h))
+		if (err == nil) != (errWhole == nil) || math.Abs(float64(alone/whole.Temperature)-1) > 1e-9 {
+			t.Fatalf("%g Pa, %g J/kg: %v %v, whole %+v %v", p, h, alone, err, whole, errWhole)
+		}
+	}
+}

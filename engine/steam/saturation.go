@@ -132,7 +132,7 @@ func mixture(liquid, vapour State, x float64) State {
 	case 1:
 		return vapour
 	}
-	mix := func(l, v float64) float64 { return l + x*(v-l) }
+	mix := func(l, v float64) float64 { return l + float64(x*(v-l)) }
 	return State{
 		Region: 4, Phase: WetSteam, Pressure: liquid.Pressure, Temperature: liquid.Temperature,
 		Saturated: true, Dryness: quantity.Fraction(x),

@@ -65,12 +65,11 @@ func (s State) Advisories() []evidence.Advisory {
 	if s.Neighbour == 0 {
 		return nil
 	}
-	return []evidence.Advisory{{
-		Code: evidence.BoundaryJump,
-		Message: fmt.Sprintf("the equations of regions %d and %d differ a little where they meet; here region %d, extended, answers for both",
-			s.Region, s.Neighbour, s.Region),
-		Limit: "IAPWS R7-97(2012) allows the regions to differ by its consistency requirements",
-	}}
+	message := fmt.Sprintf("the equations of regions %d and %d differ a little where they meet; here region %d, extended, answers for both", s.Region, s.Neighbour, s.Region)
+	if s.Region == 4 {
+		message = "the saturated phases of regions 1 and 2 differ a little from those of region 3 where they meet; here regions 1 and 2, extended, answer for both"
+	}
+	return []evidence.Advisory{{Code: evidence.BoundaryJump, Message: message, Limit: "consistency at the boundaries of regions, IAPWS R7-97(2012)"}}
 }
 
 // Models returns what the package rests on.
@@ -123,9 +122,9 @@ func AtPressureTemperature(p quantity.Pressure, t quantity.Temperature) (State, 
 	case 5:
 		fill5(&s, float64(p), float64(t))
 	default:
-		rho, ok := density3(float64(p), float64(t), at.dense)
-		if !ok {
-			return State{}, unfound(float64(p))
+		rho, err := densityAt(float64(p), float64(t), at.dense)
+		if err != nil {
+			return State{}, err
 		}
 		fill3(&s, rho, float64(t))
 	}
@@ -165,9 +164,9 @@ func Enthalpy(p quantity.Pressure, t quantity.Temperature) (quantity.Enthalpy, e
 	case 5:
 		return quantity.Enthalpy(region5Enthalpy(float64(p), float64(t))), nil
 	}
-	rho, ok := density3(float64(p), float64(t), at.dense)
-	if !ok {
-		return 0, unfound(float64(p))
+	rho, err := densityAt(float64(p), float64(t), at.dense)
+	if err != nil {
+		return 0, err
 	}
 	return quantity.Enthalpy(region3(rho, float64(t)).h), nil
 }
@@ -187,9 +186,15 @@ func Density(p quantity.Pressure, t quantity.Temperature) (float64, error) {
 	case 5:
 		return 1 / region5Volume(float64(p), float64(t)), nil
 	}
-	rho, ok := density3(float64(p), float64(t), at.dense)
+	return densityAt(float64(p), float64(t), at.dense)
+}
+
+// densityAt is density3 with words for a density that is not found.
+func densityAt(p, t float64, dense bool) (float64, error) {
+	rho, ok := density3(p, t, dense)
 	if !ok {
-		return 0, unfound(float64(p))
+		is, _ := region3Pressure(rho, t)
+		return 0, unfound(is/p-1, "pressure of region 3")
 	}
 	return rho, nil
 }
@@ -203,8 +208,9 @@ func onTheLine(p, t float64) error {
 	}
 }
 
-func unfound(residual float64) error {
-	return &fault.NotConverged{Iterations: mostSteps, Residual: residual, Where: "density of region 3"}
+// unfound says that an equation could not be met, with the relative miss left.
+func unfound(miss float64, where string) error {
+	return &fault.NotConverged{Iterations: mostSteps, Residual: math.Abs(miss), Where: where}
 }
 
 // AtDensityTemperature returns the state of region 3 at a density in kg/m3 and

@@ -67,9 +67,9 @@ func Conductivity(p quantity.Pressure, t quantity.Temperature) (float64, error) 
 		return 0, err
 	}
 	if at.region == 3 {
-		rho, ok := density3(float64(p), float64(t), at.dense)
-		if !ok {
-			return 0, unfound(float64(p))
+		rho, err := densityAt(float64(p), float64(t), at.dense)
+		if err != nil {
+			return 0, err
 		}
 		return conductivity3(rho, float64(t))
 	}
@@ -196,7 +196,7 @@ func referenceCompressibility(delta float64) float64 {
 	a := &release.Compressibility[i]
 	sum := a[5]
 	for j := 4; j >= 0; j-- {
-		sum = math.FMA(sum, delta, a[j])
+		sum = float64(sum*delta) + a[j]
 	}
 	return 1 / sum
 }
