@@ -80,24 +80,42 @@ func startingDensity(p, t float64, dense bool) float64 {
 	}
 	table, width := &startDensity[0], highestPressure-line
 	if !dense {
-		table, width = &startDensity[1], min(boundary23(t)-line, -lineNarrow)
+		table, width = &startDensity[1], boundary23(t)-line
+		if width > -lineNarrow {
+			width = -lineNarrow
+		}
 	}
-	across := math.Sqrt(max((p-line)/width, 0)) * startAcross
+	share := (p - line) / width
+	if share < 0 {
+		share = 0
+	}
+	across := math.Sqrt(share) * startAcross
 	i, j := middle(along, first, last), middle(across, 0, startAcross)
 	x, y := along-float64(i), across-float64(j)
 	a, b, c := table[i-1][j-1:j+2], table[i][j-1:j+2], table[i+1][j-1:j+2]
-	return parabola(x,
-		parabola(y, float64(a[0]), float64(a[1]), float64(a[2])),
-		parabola(y, float64(b[0]), float64(b[1]), float64(b[2])),
-		parabola(y, float64(c[0]), float64(c[1]), float64(c[2])))
+	before, at, after := parabola(y)
+	near := float64(before*float64(a[0])) + float64(at*float64(a[1])) + float64(after*float64(a[2]))
+	here := float64(before*float64(b[0])) + float64(at*float64(b[1])) + float64(after*float64(b[2]))
+	far := float64(before*float64(c[0])) + float64(at*float64(c[1])) + float64(after*float64(c[2]))
+	before, at, after = parabola(x)
+	return float64(before*near) + float64(at*here) + float64(after*far)
 }
 
 // middle is the place nearest to at that has a neighbour on both sides.
 func middle(at float64, first, last int) int {
-	return min(max(int(at+0.5), first+1), last-1)
+	i := int(at + 0.5)
+	if i <= first {
+		return first + 1
+	}
+	if i >= last {
+		return last - 1
+	}
+	return i
 }
 
-// parabola goes through values at -1, 0 and 1.
-func parabola(at, before, middle, after float64) float64 {
-	return middle + float64(at/2*(after-before+float64(at*(after+before-2*middle))))
+// parabola returns the weights of values at -1, 0 and 1 of the parabola through
+// them, at a place near 0.
+func parabola(at float64) (before, middle, after float64) {
+	half, square := at/2, float64(at*at)
+	return float64(at*half) - half, 1 - square, float64(at*half) + half
 }

@@ -25,9 +25,15 @@ func AtPressureEntropy(p quantity.Pressure, s quantity.Entropy) (State, error) {
 // Temperature returns the temperature with h at p as AtPressureEnthalpy does,
 // and nothing else, for those who need many.
 func Temperature(p quantity.Pressure, h quantity.Enthalpy) (quantity.Temperature, error) {
-	// Most questions lie in the midst of region 1 or 2. Enthalpy rises with t in
-	// each: a temperature of its equation that lies clear of its ends is the one.
-	if p > fastLowest && p <= highestPressure {
+	// Most questions lie in the midst of region 1, 2 or 3. Enthalpy rises with t
+	// in each: a temperature of its equation that lies clear of its ends is the one.
+	dense := float64(p) > lineEnd*(1+1e-6) && p <= highestPressure
+	likely := h > denseLowest && float64(h) < denseHighest+denseRise*max(float64(p)-denseKnee, 0)
+	if dense && likely {
+		if t, ok := denseTemperature(float64(p), float64(h)); ok {
+			return quantity.Temperature(t), nil
+		}
+	} else if p > fastLowest && p <= highestPressure {
 		end := regionsEnd
 		if p < fastHighest {
 			end = saturationTemperature(float64(p))
@@ -57,7 +63,7 @@ func Temperature(p quantity.Pressure, h quantity.Enthalpy) (quantity.Temperature
 			}
 		}
 	}
-	if float64(p) > lineEnd*(1+1e-6) && p <= highestPressure {
+	if dense && !likely {
 		if t, ok := denseTemperature(float64(p), float64(h)); ok {
 			return quantity.Temperature(t), nil
 		}
@@ -80,7 +86,7 @@ func denseTemperature(p, h float64) (t float64, ok bool) {
 		rho -= (missP*a.hByT - miss*a.pByT) / determinant
 		t -= (a.pByRho*miss - a.hByRho*missP) / determinant
 		if math.Abs(missP) <= enough*p && math.Abs(miss) <= enough*math.Abs(h) {
-			return t, t > regionsEnd+margin && t < boundary23Temperature(p)-margin && rho > thinnest && rho < densest
+			return t, t > regionsEnd+margin && p > boundary23(t+margin) && rho > thinnest && rho < densest
 		}
 		if step > 1 || !(rho > thinnest && rho < densest && t > regionsEnd && t < hottest3) {
 			return 0, false
@@ -94,6 +100,10 @@ const (
 	// halfway lies between the enthalpies of liquid of region 1 and of vapour of
 	// region 2 at any pressure, in J/kg.
 	halfway = 2e6
+	// Between these, in J/kg, lies most of region 3 above the critical pressure,
+	// and little else; from the knee, in Pa, the upper one rises.
+	denseLowest, denseHighest = 1.635e6, 2.607e6
+	denseKnee, denseRise      = 40e6, 3.4e-3
 	// margin is more than the backward equations of regions 1 and 2 are off by,
 	// in K: 25 mK by IAPWS R7-97(2012) section 5.2.
 	margin = 0.1

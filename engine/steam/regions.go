@@ -69,11 +69,15 @@ func placeOf(p, t float64) (place, error) {
 		}
 		return place{region: 5}, nil
 	}
-	if region := clearRegion(p, t); region != 0 {
+	if t >= regionsEnd {
+		switch {
+		case p <= boundary23(t) && !(t == regionsEnd && p >= saturationPressure(t)):
+			return place{region: 2}, nil
+		case t > critical:
+			return place{region: 3, dense: p > lineAbove(t)}, nil
+		}
+	} else if region := clearRegion(p, t); region != 0 {
 		return place{region: region}, nil
-	}
-	if t > critical {
-		return place{region: 3, dense: p > lineAbove(t)}, nil
 	}
 	line := saturationPressure(t)
 	liquid := p > line

@@ -170,20 +170,25 @@ func conductivity(rho, t, cp, cv, byPressure float64) float64 {
 		pressureUnit = 22.064e6      // Pa
 		smallest     = 1.2e-7        // of y, below which the enhancement vanishes
 	)
-	inverse, delta := critical/t, rho/criticalDensity
-	lambda := background(rho, t)
-	zeta := byPressure * pressureUnit / criticalDensity
+	inverse, delta := critical/t, rho*(1/criticalDensity)
+	root := math.Sqrt(inverse)
+	lambda := 1e-3 / (root * conductivity0(inverse)) * math.Exp(delta*conductivity1(inverse-1, delta-1))
+	zeta := byPressure * (pressureUnit / criticalDensity)
 	excess := delta * (zeta - referenceCompressibility(delta)*reference*inverse)
 	if excess <= 0 {
 		return lambda
 	}
-	y := reach * correlation * math.Exp(exponent*math.Log(excess/susceptible))
+	y := reach * correlation * math.Exp(exponent*math.Log(excess*(1/susceptible)))
 	if y < smallest {
 		return lambda
 	}
 	ratio := cv / cp
-	z := 2 / (math.Pi * y) * ((1-ratio)*math.Atan(y) + ratio*y - 1 + math.Exp(-1/(1/y+y*y/(3*delta*delta))))
-	return lambda + 1e-9*amplitude*delta*(cp/cpUnit)/(inverse*viscosity(rho, t))*z
+	// 1/(1/y + y^2/(3 delta^2)), with one division.
+	square := 3 * delta * delta
+	damping := y * square / (square + y*y*y)
+	z := (1-ratio)*math.Atan(y) + ratio*y - 1 + math.Exp(-damping)                           // times pi y/2
+	fluidity := root * viscosity0(inverse) * math.Exp(-delta*viscosity1(inverse-1, delta-1)) // of viscosity's 100 uPa s
+	return lambda + 1e-5*amplitude*(2/math.Pi)/cpUnit*delta*cp*fluidity*z/(inverse*y)
 }
 
 // referenceCompressibility is IAPWS R15-11 Eq. 25: the compressibility at the
