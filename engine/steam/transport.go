@@ -26,11 +26,8 @@ func (s State) Viscosity() (mu float64, ok bool) {
 // with the critical enhancement for industrial use. It does not exist (ok is
 // false) in wet steam, above 1173.15 K and at the critical point.
 func (s State) Conductivity() (lambda float64, ok bool) {
-	if !s.OnePhase || s.Temperature > hottestTransport {
-		return 0, false
-	}
-	rho := 1 / s.Volume
-	return conductivity(rho, float64(s.Temperature), s.Cp, s.Cv, -rho*rho*s.VolumeByPressure), true
+	parts, ok := s.ConductivityParts()
+	return parts.Total(), ok
 }
 
 // SurfaceTension returns the surface tension between the saturated phases in
@@ -77,7 +74,7 @@ func Conductivity(p quantity.Pressure, t quantity.Temperature) (float64, error) 
 	mixed := g.byPi - g.byPiTau
 	cp := -gasConstant * g.byTauTau
 	rho := float64(p) / (gasConstant * float64(t) * g.byPi)
-	return conductivity(rho, float64(t), cp, cp+gasConstant*mixed*mixed/g.byPiPi, -rho*g.byPiPi/(float64(p)*g.byPi)), nil
+	return conductivity(rho, float64(t), cp, cp+gasConstant*mixed*mixed/g.byPiPi, -rho*g.byPiPi/(float64(p)*g.byPi)).Total(), nil
 }
 
 // response returns the derivatives of a region other than 3 that its volume,
@@ -108,7 +105,7 @@ func conductivity3(rho, t float64) (float64, error) {
 	}
 	mixed := first - byDeltaTau
 	cv := -gasConstant * byTauTau
-	return conductivity(rho, t, cv+gasConstant*mixed*mixed/stiffness, cv, 1/(gasConstant*t*stiffness)), nil
+	return conductivity(rho, t, cv+gasConstant*mixed*mixed/stiffness, cv, 1/(gasConstant*t*stiffness)).Total(), nil
 }
 
 // ViscosityAtDensity returns the dynamic viscosity in Pa s at a density in kg/m3
@@ -156,9 +153,33 @@ func background(rho, t float64) float64 {
 	return lambda0 * math.Exp(delta*conductivity1(inverse-1, delta-1))
 }
 
+// ConductivityParts is a thermal conductivity with what it is made of: the
+// quantities that IAPWS R15-11 prints beside it in its Tables 7 to 9.
+type ConductivityParts struct {
+	Dilute            float64 // W/(m K), lambda0
+	DensityFactor     float64 // lambda1
+	Enhancement       float64 // W/(m K), lambda2
+	CorrelationLength float64 // m, xi
+	Crossover         float64 // Z(y)
+	ReferenceSlope    float64 // kg/(m3 Pa), (drho/dp)_T at the reference temperature
+}
+
+// Total is the thermal conductivity in W/(m K).
+func (c ConductivityParts) Total() float64 { return c.Dilute*c.DensityFactor + c.Enhancement }
+
+// ConductivityParts returns the thermal conductivity with its parts. It exists
+// where Conductivity does.
+func (s State) ConductivityParts() (parts ConductivityParts, ok bool) {
+	if !s.OnePhase || s.Temperature > hottestTransport {
+		return parts, false
+	}
+	rho := 1 / s.Volume
+	return conductivity(rho, float64(s.Temperature), s.Cp, s.Cv, -rho*rho*s.VolumeByPressure), true
+}
+
 // conductivity is IAPWS R15-11 Eqs. 15 to 25, with cp and cv in J/(kg K) and
 // the derivative of density by pressure at constant temperature in kg/(m3 Pa).
-func conductivity(rho, t, cp, cv, byPressure float64) float64 {
+func conductivity(rho, t, cp, cv, byPressure float64) ConductivityParts {
 	const (
 		amplitude    = 177.8514      // Lambda
 		reach        = 1 / 0.40      // 1/nm
@@ -172,23 +193,31 @@ func conductivity(rho, t, cp, cv, byPressure float64) float64 {
 	)
 	inverse, delta := critical/t, rho*(1/criticalDensity)
 	root := math.Sqrt(inverse)
-	lambda := 1e-3 / (root * conductivity0(inverse)) * math.Exp(delta*conductivity1(inverse-1, delta-1))
 	zeta := byPressure * (pressureUnit / criticalDensity)
-	excess := delta * (zeta - referenceCompressibility(delta)*reference*inverse)
-	if excess <= 0 {
-		return lambda
+	zetaReference := referenceCompressibility(delta)
+	parts := ConductivityParts{
+		Dilute:         1e-3 / (root * conductivity0(inverse)),
+		DensityFactor:  math.Exp(delta * conductivity1(inverse-1, delta-1)),
+		ReferenceSlope: zetaReference * (criticalDensity / pressureUnit),
 	}
-	y := reach * correlation * math.Exp(exponent*math.Log(excess*(1/susceptible)))
+	excess := delta * (zeta - zetaReference*reference*inverse)
+	if excess <= 0 {
+		return parts
+	}
+	xi := correlation * math.Exp(exponent*math.Log(excess*(1/susceptible)))
+	parts.CorrelationLength = xi * 1e-9
+	y := reach * xi
 	if y < smallest {
-		return lambda
+		return parts
 	}
 	ratio := cv / cp
 	// 1/(1/y + y^2/(3 delta^2)), with one division.
 	square := 3 * delta * delta
 	damping := y * square / (square + y*y*y)
-	z := (1-ratio)*math.Atan(y) + ratio*y - 1 + math.Exp(-damping)                           // times pi y/2
-	fluidity := root * viscosity0(inverse) * math.Exp(-delta*viscosity1(inverse-1, delta-1)) // of viscosity's 100 uPa s
-	return lambda + 1e-5*amplitude*(2/math.Pi)/cpUnit*delta*cp*fluidity*z/(inverse*y)
+	parts.Crossover = (2 / math.Pi) / y * ((1-ratio)*math.Atan(y) + ratio*y - 1 + math.Exp(-damping))
+	fluidity := root * viscosity0(inverse) * math.Exp(-delta*viscosity1(inverse-1, delta-1)) // of 100 uPa s
+	parts.Enhancement = 1e-5 * amplitude / cpUnit * delta * cp * fluidity * parts.Crossover / inverse
+	return parts
 }
 
 // referenceCompressibility is IAPWS R15-11 Eq. 25: the compressibility at the

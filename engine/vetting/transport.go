@@ -46,23 +46,26 @@ var ratios = [][2]float64{
 // use with R7-97.
 type conductivityRow struct {
 	t, p               float64 // K, MPa
-	lambda, background float64 // mW/(m K)
+	lambda, dilute     float64 // mW/(m K)
+	factor             float64
 	enhancement        float64 // mW/(m K)
-	rho, byPressure    float64 // kg/m3, kg/(m3 MPa)
+	rho                float64 // kg/m3
+	slope, atReference float64 // (drho/dp)_T at T and at the reference temperature, kg/(m3 MPa)
+	xi                 float64 // nm
 	cp, cv             float64 // kJ/(kg K)
+	crossover          float64
 	mu                 float64 // uPa s
 	table              string
 }
 
-// conductivities are Tables 7 and 8 at p and T, and Table 9 at rho and T. Their
-// background is printed as lambda0; lambda1 is their ratio to it.
+// conductivities are Tables 7 and 8 at p and T, and Table 9 at rho and T.
 var conductivities = []conductivityRow{
-	{620, 20, 0.481485195e3, 0.484911627e2, 0.126391714e2, 0.613227777e3, 0.520937820e1, 0.763433705e1, 0.303793441e1, 0.709051068e2, "Table 7"},
-	{620, 50, 0.545038940e3, 0.484911627e2, 0.575816285e1, 0.699226043e3, 0.184869007e1, 0.532047725e1, 0.291692653e1, 0.841527945e2, "Table 7"},
-	{650, 0.3, 0.522311024e2, 0.518787461e2, 0.129246457e-3, 0.100452141e1, 0.336351419e1, 0.207010035e1, 0.159675313e1, 0.234877453e2, "Table 8"},
-	{800, 50, 0.177709914e3, 0.698329394e2, 0.664341394e1, 0.218030012e3, 0.661484493e1, 0.590718707e1, 0.252343426e1, 0.393727534e2, "Table 8"},
-	{647.35, 0, 0.366879411e3, 0.515764797e2, 0.187183159e3, 222, 0.177778595e3, 0.101054488e3, 0.437466458e1, 0.312204749e2, "Table 9"},
-	{647.35, 0, 0.124182415e4, 0.515764797e2, 0.985582122e3, 322, 0.692651138e4, 0.312090124e4, 0.452163449e1, 0.393455495e2, "Table 9"},
+	{620, 20, 0.481485195e3, 0.484911627e2, 0.966869008e1, 0.126391714e2, 0.613227777e3, 0.520937820e1, 0.935037951, 0.377694973, 0.763433705e1, 0.303793441e1, 0.166942638, 0.709051068e2, "Table 7"},
+	{620, 50, 0.545038940e3, 0.484911627e2, 0.111212177e2, 0.575816285e1, 0.699226043e3, 0.184869007e1, 0.639306277, 0.189692422, 0.532047725e1, 0.291692653e1, 0.113592223, 0.841527945e2, "Table 7"},
+	{650, 0.3, 0.522311024e2, 0.518787461e2, 0.100678943e1, 0.129246457e-3, 0.100452141e1, 0.336351419e1, 0.223819386e1, 0.104305448e-2, 0.207010035e1, 0.159675313e1, 0.121437275e-2, 0.234877453e2, "Table 8"},
+	{800, 50, 0.177709914e3, 0.698329394e2, 0.244965343e1, 0.664341394e1, 0.218030012e3, 0.661484493e1, 0.312182530e1, 0.193491903, 0.590718707e1, 0.252343426e1, 0.137263826, 0.393727534e2, "Table 8"},
+	{647.35, 0, 0.366879411e3, 0.515764797e2, 0.348407362e1, 0.187183159e3, 222, 0.177778595e3, 0.311832789e1, 0.158223683e1, 0.101054488e3, 0.437466458e1, 0.217577777, 0.312204749e2, "Table 9"},
+	{647.35, 0, 0.124182415e4, 0.515764797e2, 0.496819532e1, 0.985582122e3, 322, 0.692651138e4, 0.275192511e1, 0.124722016e2, 0.312090124e4, 0.452163449e1, 0.322306729e-1, 0.393455495e2, "Table 9"},
 }
 
 // tensions are of IAPWS R1-76(2014) Table 1: degC, mN/m.
@@ -132,26 +135,27 @@ func conductivityChecks(row conductivityRow) []Check {
 			return steam.AtDensityTemperature(row.rho, quantity.Temperature(row.t))
 		}
 	}
+	parts := func(s steam.State) steam.ConductivityParts {
+		p, _ := s.ConductivityParts()
+		return p
+	}
 	var checks []Check
 	for _, c := range []struct {
 		name, unit string
 		published  float64
 		read       func(s steam.State) float64
 	}{
-		{"conductivity", "mW/(m K)", row.lambda, func(s steam.State) float64 { lambda, _ := s.Conductivity(); return lambda * 1e3 }},
-		{"conductivity-dilute", "mW/(m K)", row.background, func(s steam.State) float64 {
-			lambda, _ := steam.BackgroundConductivity(0, s.Temperature)
-			return lambda * 1e3
-		}},
-		{"conductivity-enhancement", "mW/(m K)", row.enhancement, func(s steam.State) float64 {
-			whole, _ := s.Conductivity()
-			background, _ := steam.BackgroundConductivity(1/s.Volume, s.Temperature)
-			return (whole - background) * 1e3
-		}},
+		{"conductivity", "mW/(m K)", row.lambda, func(s steam.State) float64 { return parts(s).Total() * 1e3 }},
+		{"conductivity-dilute", "mW/(m K)", row.dilute, func(s steam.State) float64 { return parts(s).Dilute * 1e3 }},
+		{"conductivity-factor", "", row.factor, func(s steam.State) float64 { return parts(s).DensityFactor }},
+		{"conductivity-enhancement", "mW/(m K)", row.enhancement, func(s steam.State) float64 { return parts(s).Enhancement * 1e3 }},
 		{"density", "kg/m3", row.rho, func(s steam.State) float64 { return 1 / s.Volume }},
-		{"density-by-pressure", "kg/(m3 MPa)", row.byPressure, func(s steam.State) float64 { return -s.VolumeByPressure / (s.Volume * s.Volume) * 1e6 }},
+		{"density-by-pressure", "kg/(m3 MPa)", row.slope, func(s steam.State) float64 { return -s.VolumeByPressure / (s.Volume * s.Volume) * 1e6 }},
+		{"density-by-pressure-at-reference", "kg/(m3 MPa)", row.atReference, func(s steam.State) float64 { return parts(s).ReferenceSlope * 1e6 }},
+		{"correlation-length", "nm", row.xi, func(s steam.State) float64 { return parts(s).CorrelationLength * 1e9 }},
 		{"cp", "kJ/(kg K)", row.cp, func(s steam.State) float64 { return s.Cp / 1e3 }},
 		{"cv", "kJ/(kg K)", row.cv, func(s steam.State) float64 { return s.Cv / 1e3 }},
+		{"crossover", "", row.crossover, func(s steam.State) float64 { return parts(s).Crossover }},
 		{"viscosity", "uPa s", row.mu, func(s steam.State) float64 { mu, _ := s.Viscosity(); return mu * 1e6 }},
 	} {
 		checks = append(checks, Check{
