@@ -307,7 +307,8 @@ func TestStatesAreSingleStates(t *testing.T) {
 			})
 			if err != nil {
 				refusal, failure := status.Convert(err), failures[int32(i)]
-				if failure.GetMessage() != refusal.Message() || failure.GetReason() != statuses.Reason(refusal) || len(failure.GetViolations()) != len(statuses.Violations(refusal)) {
+				same := slices.EqualFunc(failure.GetViolations(), statuses.Violations(refusal), func(a, b *calandriav1.Violation) bool { return proto.Equal(a, b) })
+				if failure.GetMessage() != refusal.Message() || failure.GetReason() != statuses.Reason(refusal) || !same {
 					t.Errorf("%s, %d: %v, alone %v", name, i, failure, refusal)
 				}
 				continue
@@ -319,6 +320,48 @@ func TestStatesAreSingleStates(t *testing.T) {
 			}
 			if joined := rowOf(answer, row, int32(i)); !proto.Equal(joined, single) {
 				t.Errorf("%s, %d: %v, alone %v", name, i, joined, single)
+			}
+		}
+	}
+}
+
+// TestManyFailuresReachTheCaller sends as many states as a request may hold,
+// none of which exists, or all of which have every number, to a gRPC client
+// that takes 4 MiB, as clients do unless told otherwise.
+func TestManyFailuresReachTheCaller(t *testing.T) {
+	s := start(t)
+	client := calandriav1.NewSteamServiceClient(s.connection)
+	const states = 20_000
+	repeat := func(v float64) []float64 { return slices.Repeat([]float64{v}, states) }
+	boiling, err := client.GetSaturation(t.Context(), &calandriav1.GetSaturationRequest{TemperatureC: proto.Float64(100)})
+	if err != nil {
+		t.Fatal(err)
+	}
+	for name, c := range map[string]struct {
+		request *calandriav1.ComputeSteamStatesRequest
+		reason  calandriav1.Reason
+	}{
+		"both beyond their bounds": {&calandriav1.ComputeSteamStatesRequest{PressureKpaAbs: repeat(-1.2345678901234567e-200), EnthalpyKjPerKg: repeat(-1.2345678901234567e200)}, calandriav1.Reason_REASON_FIELD_INVALID},
+		"on the saturation line":   {&calandriav1.ComputeSteamStatesRequest{PressureKpaAbs: repeat(boiling.GetPressureKpaAbs()), TemperatureC: repeat(100)}, calandriav1.Reason_REASON_FIELD_INVALID},
+		"beyond the range":         {&calandriav1.ComputeSteamStatesRequest{PressureKpaAbs: repeat(60_000), TemperatureC: repeat(900)}, calandriav1.Reason_REASON_OUTSIDE_CORRELATION},
+		"good":                     {&calandriav1.ComputeSteamStatesRequest{TemperatureC: repeat(100), DrynessFraction: repeat(1)}, calandriav1.Reason_REASON_UNSPECIFIED},
+	} {
+		answer, err := client.ComputeSteamStates(t.Context(), c.request)
+		failures := answer.GetFailures()
+		if c.reason == calandriav1.Reason_REASON_UNSPECIFIED {
+			if err != nil || len(answer.GetIndex()) != states || len(failures) != 0 {
+				t.Errorf("%s: %d answers, %d failures, %v", name, len(answer.GetIndex()), len(failures), err)
+			}
+			continue
+		}
+		if err != nil || len(failures) != states {
+			t.Errorf("%s: %d failures, %v", name, len(failures), err)
+			continue
+		}
+		for i, f := range failures {
+			if f.GetReason() != c.reason || f.GetIndex() != int32(i) || f.GetMessage() == "" || (len(f.GetViolations()) > 0) != (i < 2000) {
+				t.Errorf("%s, %d: %v", name, i, f)
+				break
 			}
 		}
 	}

@@ -154,8 +154,18 @@ func (c *SteamColumns) Compute(i int) error {
 	return nil
 }
 
+// An answer that is all failures must still pass the 4 MiB that gRPC clients
+// take unless told otherwise: words cost up to 700 bytes a state, numbers 135.
+const (
+	failuresInWords = 2000
+	withoutWords    = "The first 2000 failures are put into words; ask for this state alone."
+)
+
 // Fail puts into the answer that one of the states has none.
 func (c *SteamColumns) Fail(i int, reason calandriav1.Reason, message string, violations []*calandriav1.Violation) {
+	if len(c.answer.Failures) >= failuresInWords {
+		message, violations = withoutWords, nil
+	}
 	c.answer.Failures = append(c.answer.Failures, &calandriav1.StateFailure{Index: int32(i), Reason: reason, Message: message, Violations: violations})
 }
 

@@ -114,3 +114,28 @@ func TestTooLateFromTheStart(t *testing.T) {
 		t.Errorf("%v", err)
 	}
 }
+
+// TestManyStatesEndWithTheCaller gives many states to a caller who has gone:
+// the work stops at the next look at the clock, without an answer.
+func TestManyStatesEndWithTheCaller(t *testing.T) {
+	request := &calandriav1.ComputeSteamStatesRequest{PressureKpaAbs: make([]float64, 20_000), TemperatureC: make([]float64, 20_000)}
+	ctx := &going{Context: t.Context(), looks: 3}
+	answer, err := (&Services{}).ComputeSteamStates(ctx, request)
+	if answer != nil || !errors.Is(err, context.DeadlineExceeded) || ctx.looks != 0 {
+		t.Errorf("%v %v, %d looks left", answer, err, ctx.looks)
+	}
+}
+
+// going is a context that ends after so many looks at it.
+type going struct {
+	context.Context
+	looks int
+}
+
+func (g *going) Err() error {
+	if g.looks == 0 {
+		return context.DeadlineExceeded
+	}
+	g.looks--
+	return nil
+}

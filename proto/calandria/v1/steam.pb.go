@@ -203,9 +203,10 @@ type SteamState struct {
 	// Specific heat at constant pressure; absent in wet steam and at the critical
 	// point.
 	SpecificHeatCpKjPerKgK *float64 `protobuf:"fixed64,11,opt,name=specific_heat_cp_kj_per_kg_k,json=specificHeatCpKjPerKgK,proto3,oneof" json:"specific_heat_cp_kj_per_kg_k,omitempty"`
-	// Specific heat at constant volume; absent in wet steam.
+	// Specific heat at constant volume; absent in wet steam and at the critical
+	// point.
 	SpecificHeatCvKjPerKgK *float64 `protobuf:"fixed64,12,opt,name=specific_heat_cv_kj_per_kg_k,json=specificHeatCvKjPerKgK,proto3,oneof" json:"specific_heat_cv_kj_per_kg_k,omitempty"`
-	// Speed of sound; absent in wet steam.
+	// Speed of sound; absent in wet steam and at the critical point.
 	SpeedOfSoundMPerS *float64 `protobuf:"fixed64,13,opt,name=speed_of_sound_m_per_s,json=speedOfSoundMPerS,proto3,oneof" json:"speed_of_sound_m_per_s,omitempty"`
 	// Dynamic viscosity; absent in wet steam and above 900 degC.
 	ViscosityPaS *float64 `protobuf:"fixed64,14,opt,name=viscosity_pa_s,json=viscosityPaS,proto3,oneof" json:"viscosity_pa_s,omitempty"`
@@ -666,7 +667,7 @@ type SteamStates struct {
 	// Remarks on some of the states.
 	Advisories []*StatesAdvisory `protobuf:"bytes,18,rep,name=advisories,proto3" json:"advisories,omitempty"`
 	// The states of the request that have no answer, each with the reason that
-	// GetSteamState would give.
+	// GetSteamState would give, and the first 2000 in its words too.
 	Failures []*StateFailure `protobuf:"bytes,19,rep,name=failures,proto3" json:"failures,omitempty"`
 	// What the numbers rest on.
 	Provenance    *Provenance `protobuf:"bytes,20,opt,name=provenance,proto3" json:"provenance,omitempty"`
@@ -964,7 +965,8 @@ type StateFailure struct {
 	Reason Reason `protobuf:"varint,2,opt,name=reason,proto3,enum=calandria.v1.Reason" json:"reason,omitempty"`
 	// Why, for a person.
 	Message string `protobuf:"bytes,3,opt,name=message,proto3" json:"message,omitempty"`
-	// Every number that can not be accepted, by the name of its column.
+	// Every number that can not be accepted, by the name of its column; empty
+	// after the first 2000 failures.
 	Violations    []*Violation `protobuf:"bytes,4,rep,name=violations,proto3" json:"violations,omitempty"`
 	unknownFields protoimpl.UnknownFields
 	sizeCache     protoimpl.SizeCache
