@@ -55,13 +55,18 @@ func wordViolation(field string, v *protovalidate.Violation, d protoreflect.Mess
 		}
 	}
 	limit := Limit(at)
+	wayOut := hint(field, v.FieldValue)
 	if elements[len(elements)-1].GetSubscript() != nil {
 		limit = limitOfItem(at)
+		wayOut += meant(at, v.FieldValue)
 	}
 	value := shown(v.FieldValue)
+	if twice := namedTwice(v.FieldValue); v.Proto.GetRuleId() == "repeated.unique" && twice != "" {
+		wayOut += " " + twice + " stands there twice; drop one."
+	}
 	return &calandriav1.Violation{
 		Field: field, Value: value, Limit: limit,
-		Detail: fmt.Sprintf("%s is %s; it must be %s.%s", field, value, limit, hint(field, v.FieldValue)),
+		Detail: fmt.Sprintf("%s is %s; it must be %s.%s", field, value, limit, wayOut),
 	}
 }
 
@@ -107,10 +112,50 @@ func hint(field string, v protoreflect.Value) string {
 	return ""
 }
 
+// meant guesses at the name that an item of a list of names was meant to be.
+func meant(d protoreflect.FieldDescriptor, v protoreflect.Value) string {
+	name, ok := v.Interface().(string)
+	if !ok {
+		return ""
+	}
+	names := Near(rulesOf(d).GetRepeated().GetItems().GetString().GetIn(), name)
+	if len(names) == 0 {
+		return ""
+	}
+	return " Did you mean " + names[0] + "?"
+}
+
+// namedTwice returns the first text of a list that stands there before; "" if
+// none does.
+func namedTwice(v protoreflect.Value) string {
+	list, ok := v.Interface().(protoreflect.List)
+	if !ok {
+		return ""
+	}
+	seen := map[string]bool{}
+	for i := range list.Len() {
+		text := list.Get(i).String()
+		if seen[text] {
+			return shown(list.Get(i))
+		}
+		seen[text] = true
+	}
+	return ""
+}
+
+// rulesOf reads the rules of a field; none if it has none.
+func rulesOf(d protoreflect.FieldDescriptor) *validate.FieldRules {
+	rules, ok := proto.GetExtension(d.Options(), validate.E_Field).(*validate.FieldRules)
+	if !ok {
+		return nil
+	}
+	return rules
+}
+
 // Limit words all rules of a field as one phrase with its unit.
 func Limit(d protoreflect.FieldDescriptor) string {
-	rules, ok := proto.GetExtension(d.Options(), validate.E_Field).(*validate.FieldRules)
-	if !ok || rules == nil {
+	rules := rulesOf(d)
+	if rules == nil {
 		return "valid"
 	}
 	if repeated := rules.GetRepeated(); repeated != nil {
@@ -150,11 +195,7 @@ func items(n uint64) string {
 
 // limitOfItem words the rules of one item of a list.
 func limitOfItem(d protoreflect.FieldDescriptor) string {
-	rules, ok := proto.GetExtension(d.Options(), validate.E_Field).(*validate.FieldRules)
-	if !ok {
-		return "valid"
-	}
-	item := rules.GetRepeated().GetItems()
+	item := rulesOf(d).GetRepeated().GetItems()
 	if in := item.GetString().GetIn(); len(in) > 0 {
 		return "one of " + strings.Join(in, ", ")
 	}
@@ -193,11 +234,10 @@ func Bounds(d protoreflect.MessageDescriptor) map[string]func(v float64) bool {
 	bounds := map[string]func(v float64) bool{}
 	for i := range d.Fields().Len() {
 		field := d.Fields().Get(i)
-		rules, ok := proto.GetExtension(field.Options(), validate.E_Field).(*validate.FieldRules)
-		if !ok || rules.GetDouble() == nil {
+		r := rulesOf(field).GetDouble()
+		if r == nil {
 			continue
 		}
-		r := rules.GetDouble()
 		bounds[string(field.Name())] = func(v float64) bool {
 			return !math.IsNaN(v) && !math.IsInf(v, 0) &&
 				(!r.HasGt() || v > r.GetGt()) && (!r.HasGte() || v >= r.GetGte()) &&
