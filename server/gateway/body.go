@@ -132,9 +132,19 @@ func (b *bodyCheck) list(m *dynamicpb.Message, field protoreflect.FieldDescripto
 	}
 	list := m.Mutable(field).List()
 	for i := 0; b.tokens.More(); i++ {
-		item := fmt.Sprintf("%s[%d]", path, i)
-		err := b.single(field, item, depth+1, func(v protoreflect.Value) { list.Append(v) })
+		start := b.tokens.InputOffset()
+		token, err := b.tokens.Token()
 		if err != nil {
+			return err
+		}
+		if number, ok := plainNumber(field, token); ok {
+			list.Append(number)
+			continue
+		}
+		item := fmt.Sprintf("%s[%d]", path, i)
+		if token == nil && field.Kind() != protoreflect.MessageKind {
+			b.add(item, "null", "a value", "Every item needs one: take this item out, and what goes with it in other lists.")
+		} else if err := b.value(field, item, depth+1, start, token, func(v protoreflect.Value) { list.Append(v) }); err != nil {
 			return err
 		}
 		if list.Len() == i { // a faulty item keeps its place, so that the others keep theirs
@@ -149,6 +159,18 @@ func (b *bodyCheck) list(m *dynamicpb.Message, field protoreflect.FieldDescripto
 	return err
 }
 
+// plainNumber is an item of a list of numbers that nothing is wrong with: JSON
+// writes numbers no more freely than number reads them. Columns are long, and
+// looking each item up in words costs more than the rest of reading it.
+func plainNumber(field protoreflect.FieldDescriptor, token json.Token) (v protoreflect.Value, ok bool) {
+	text, ok := token.(json.Number)
+	if !ok || field.Kind() != protoreflect.DoubleKind {
+		return v, false
+	}
+	number, err := text.Float64()
+	return protoreflect.ValueOfFloat64(number), err == nil
+}
+
 // single reads one value of a field and hands it to set if it is right.
 func (b *bodyCheck) single(field protoreflect.FieldDescriptor, path string, depth int, set func(protoreflect.Value)) error {
 	start := b.tokens.InputOffset()
@@ -156,6 +178,12 @@ func (b *bodyCheck) single(field protoreflect.FieldDescriptor, path string, dept
 	if err != nil {
 		return err
 	}
+	return b.value(field, path, depth, start, token, set)
+}
+
+// value reads the rest of a value of a field, whose first token is read and
+// begins at start, and hands it to set if it is right.
+func (b *bodyCheck) value(field protoreflect.FieldDescriptor, path string, depth int, start int64, token json.Token, set func(protoreflect.Value)) error {
 	if field.Kind() == protoreflect.MessageKind {
 		if token != json.Delim('{') {
 			wayOut := "Its fields are " + strings.Join(namesOf(field.Message()), ", ") + "."
@@ -277,7 +305,7 @@ func (b *bodyCheck) tooDeep(path string) error {
 }
 
 var (
-	notANumber   = regexp.MustCompile(`^[\s:,\[]*[+-]?(NaN|nan|Infinity|inf|Inf)`)
+	notANumber   = regexp.MustCompile(`^[+-]?(NaN|nan|Infinity|inf|Inf)`)
 	splitDecimal = regexp.MustCompile(`[0-9],[0-9]*$`)
 )
 
@@ -286,12 +314,9 @@ func (b *bodyCheck) syntax(err error) {
 	if errors.Is(err, errTooDeep) {
 		return
 	}
+	// Where the value begins that can not be read. The error's own offset counts
+	// no commas, colons and brackets, and so falls behind along a list.
 	at := int(b.tokens.InputOffset())
-	var syntax *json.SyntaxError
-	if errors.As(err, &syntax) && syntax.Offset > 0 {
-		at = int(syntax.Offset)
-	}
-	at = min(max(at, 0), len(b.body))
 	if errors.Is(err, io.EOF) || errors.Is(err, io.ErrUnexpectedEOF) {
 		b.add("", "cut off", "a whole JSON object", "A brace, bracket or quote is not closed.")
 		return
@@ -304,12 +329,7 @@ func (b *bodyCheck) syntax(err error) {
 	line := 1 + bytes.Count(b.body[:at], []byte("\n"))
 	where := fmt.Sprintf("not JSON near line %d, after %q", line, before)
 	wayOut := "Check commas, quotes and brackets."
-	// The reader stops before, at or just behind the offending character.
-	isNaN := false
-	for back := range 3 {
-		isNaN = isNaN || notANumber.Match(b.body[max(at-back, 0):])
-	}
-	if isNaN {
+	if notANumber.Match(b.body[at:]) {
 		wayOut = "JSON has no NaN or Infinity; leave the field out if the value is not known."
 	} else if splitDecimal.Match(before) {
 		wayOut = "It looks like a decimal comma: write a decimal point."

@@ -16,6 +16,7 @@ import (
 	"github.com/fullstorydev/grpchan/inprocgrpc"
 	"google.golang.org/grpc"
 	"google.golang.org/protobuf/encoding/protojson"
+	"google.golang.org/protobuf/proto"
 	"google.golang.org/protobuf/reflect/protoreflect"
 
 	calandriav1 "calandria.example/calandria/proto/calandria/v1"
@@ -163,10 +164,11 @@ func FuzzBody(f *testing.F) {
 	}
 	g := wholeFace(f)
 	f.Fuzz(func(t *testing.T, body string) {
-		descriptor := (&calandriav1.SolveEffectRequest{}).ProtoReflect().Descriptor()
-		if len(checkBody([]byte(body), descriptor, 16)) == 0 {
-			if err := (protojson.UnmarshalOptions{}).Unmarshal([]byte(body), &calandriav1.SolveEffectRequest{}); err != nil {
-				t.Fatalf("let through, but %v: %q", err, body)
+		for _, request := range []proto.Message{&calandriav1.SolveEffectRequest{}, &calandriav1.ComputeSteamStatesRequest{}} {
+			if len(checkBody([]byte(body), request.ProtoReflect().Descriptor(), 16)) == 0 {
+				if err := (protojson.UnmarshalOptions{}).Unmarshal([]byte(body), request); err != nil {
+					t.Fatalf("let through, but %v: %q", err, body)
+				}
 			}
 		}
 		for _, path := range []string{"/v1/effects:solve", "/v1/steam/states:compute"} {
