@@ -85,6 +85,7 @@ func TestBadInput(t *testing.T) {
 		{"one coordinate", "GET", state + "?entropy_kj_per_kg_k=5", "", nil, 400, "UNDER_SPECIFIED", []string{"pressure_kpa_abs", "enthalpy_kj_per_kg"}},
 		{"a pair that may have two states", "GET", state + "?temperature_c=50&enthalpy_kj_per_kg=209", "", nil, 400, "FIELD_INVALID", []string{"given with temperature_c", "enthalpy_kj_per_kg with entropy_kj_per_kg_k"}},
 		{"three coordinates", "GET", state + "?pressure_kpa_abs=100&enthalpy_kj_per_kg=209&entropy_kj_per_kg_k=1", "", nil, 400, "OVER_SPECIFIED", []string{"Drop any one"}},
+		{"five coordinates", "GET", state + "?pressure_kpa_abs=100&temperature_c=20&dryness_fraction=0&enthalpy_kj_per_kg=209&entropy_kj_per_kg_k=1", "", nil, 400, "OVER_SPECIFIED", []string{"at most 2 of this set"}},
 		{"enthalpy in J/kg", "GET", state + "?pressure_kpa_abs=100&enthalpy_kj_per_kg=2700000", "", nil, 400, "FIELD_INVALID", []string{"at most 10000 kJ/kg"}},
 		{"enthalpy of no state", "GET", state + "?pressure_kpa_abs=100&enthalpy_kj_per_kg=9000", "", nil, 400, "OUTSIDE_CORRELATION", []string{"enthalpy_kj_per_kg", "at this pressure", "kJ/kg"}},
 		{"entropy of no state", "GET", state + "?pressure_kpa_abs=100&entropy_kj_per_kg_k=-5", "", nil, 400, "OUTSIDE_CORRELATION", []string{"entropy_kj_per_kg_k", "kJ/(kg K)"}},

@@ -90,7 +90,8 @@ func pairOf(given []string) (pair, error) {
 		return pair{}, tooFew(1, partners(given[0])...)
 	case 2:
 	default:
-		return pair{}, tooMany(given...)
+		// Two fix a state: any three are an irreducible conflict, more are not.
+		return pair{}, tooMany(given[:3]...)
 	}
 	var names []string
 	for _, p := range pairs {
