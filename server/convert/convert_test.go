@@ -94,3 +94,27 @@ func TestEveryNumberOfAnAnswerLeaves(t *testing.T) {
 		}
 	}
 }
+
+// TestAStateAmongManyTakesNoMemory: what a state needs is there before it is
+// computed, up to the columns that grow with those that have the number.
+func TestAStateAmongManyTakesNoMemory(t *testing.T) {
+	const runs = 1000
+	request := &calandriav1.ComputeSteamStatesRequest{Want: []string{"region", "phase", "temperature_c", "density_kg_per_m3"}}
+	for i := range runs + 1 { // one to warm up
+		request.PressureKpaAbs = append(request.PressureKpaAbs, 20+float64(i))
+		request.EnthalpyKjPerKg = append(request.EnthalpyKjPerKg, 100+3*float64(i))
+	}
+	columns, err := SteamStatesRequest(request)
+	if err != nil {
+		t.Fatal(err)
+	}
+	i := 0
+	if n := testing.AllocsPerRun(runs, func() {
+		if err := columns.Compute(i); err != nil {
+			t.Fatal(err)
+		}
+		i++
+	}); n != 0 || len(columns.Answer().GetTemperatureC()) != runs+1 {
+		t.Errorf("%g allocations a state, %d states", n, len(columns.Answer().GetTemperatureC()))
+	}
+}

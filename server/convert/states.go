@@ -14,6 +14,7 @@ type SteamColumns struct {
 	pair          pair
 	first, second []float64
 	answer        *calandriav1.SteamStates
+	state         *steam.State // at work: one for all, so that none needs memory of its own
 	put           []func(index int32, s *steam.State)
 	remarked      map[string]*calandriav1.StatesAdvisory
 }
@@ -38,7 +39,7 @@ func SteamStatesRequest(m *calandriav1.ComputeSteamStatesRequest) (*SteamColumns
 	}
 	c := &SteamColumns{
 		pair: chosen, first: columns[chosen.first], second: columns[chosen.second],
-		answer: nil, put: nil, remarked: map[string]*calandriav1.StatesAdvisory{},
+		state: new(steam.State), answer: nil, put: nil, remarked: map[string]*calandriav1.StatesAdvisory{},
 	}
 	if len(c.first) != len(c.second) {
 		return nil, &fault.Invalid{
@@ -133,19 +134,20 @@ func (c *SteamColumns) Values(i int) (first, second string, a, b float64) {
 
 // Compute puts one of the states into the answer, or returns why it has none.
 func (c *SteamColumns) Compute(i int) error {
-	s, err := c.pair.at(c.first[i], c.second[i])
-	if err != nil {
+	var err error
+	if *c.state, err = c.pair.at(c.first[i], c.second[i]); err != nil {
 		return err
 	}
 	index := int32(i)
 	c.answer.Index = append(c.answer.Index, index)
 	for _, put := range c.put {
-		put(index, &s)
+		put(index, c.state)
 	}
-	for k, remark := range s.Advisories() {
+	remarks := c.state.Advisories()
+	for k, remark := range remarks {
 		group, ok := c.remarked[remark.Message]
 		if !ok {
-			group = &calandriav1.StatesAdvisory{Advisory: advisories(s.Advisories())[k], Index: nil}
+			group = &calandriav1.StatesAdvisory{Advisory: advisories(remarks)[k], Index: nil}
 			c.remarked[remark.Message] = group
 			c.answer.Advisories = append(c.answer.Advisories, group)
 		}
