@@ -1,12 +1,17 @@
 package convert
 
 import (
+	"errors"
 	"math"
+	"slices"
 	"strings"
 	"testing"
 
+	validate "buf.build/gen/go/bufbuild/protovalidate/protocolbuffers/go/buf/validate"
+	"google.golang.org/protobuf/proto"
 	"google.golang.org/protobuf/reflect/protoreflect"
 
+	"calandria.example/calandria/engine/fault"
 	"calandria.example/calandria/engine/train"
 	calandriav1 "calandria.example/calandria/proto/calandria/v1"
 )
@@ -116,5 +121,90 @@ func TestAStateAmongManyTakesNoMemory(t *testing.T) {
 		i++
 	}); n != 0 || len(columns.Answer().GetTemperatureC()) != runs+1 {
 		t.Errorf("%g allocations a state, %d states", n, len(columns.Answer().GetTemperatureC()))
+	}
+}
+
+// TestPairs gives every one and every two of the coordinates: the pairs that
+// the contract names are answered, the others refused, and of one coordinate
+// exactly its partners are asked for.
+func TestPairs(t *testing.T) {
+	partners := map[string][]string{ // as the contract has them
+		"pressure_kpa_abs":    {"temperature_c", "dryness_fraction", "enthalpy_kj_per_kg", "entropy_kj_per_kg_k"},
+		"temperature_c":       {"pressure_kpa_abs", "dryness_fraction"},
+		"dryness_fraction":    {"pressure_kpa_abs", "temperature_c"},
+		"enthalpy_kj_per_kg":  {"pressure_kpa_abs", "entropy_kj_per_kg_k"},
+		"entropy_kj_per_kg_k": {"pressure_kpa_abs", "enthalpy_kj_per_kg"},
+	}
+	// Wet steam of 100 kPa, near enough by common practice for each pair to
+	// have a state.
+	values := map[string]float64{"pressure_kpa_abs": 100, "temperature_c": 90, "dryness_fraction": 0.9, "enthalpy_kj_per_kg": 2450, "entropy_kj_per_kg_k": 6.75}
+	given := func(names ...string) *calandriav1.GetSteamStateRequest {
+		request := &calandriav1.GetSteamStateRequest{}
+		for _, name := range names {
+			m := request.ProtoReflect()
+			m.Set(m.Descriptor().Fields().ByName(protoreflect.Name(name)), protoreflect.ValueOfFloat64(values[name]))
+		}
+		return request
+	}
+	fields := given().ProtoReflect().Descriptor().Fields()
+	if fields.Len() != len(partners) {
+		t.Fatalf("%d coordinates", fields.Len())
+	}
+	for first, with := range partners {
+		_, err := SteamRequest(given(first))
+		var few *fault.Specification
+		if !errors.As(err, &few) || few.Over || few.Missing != 1 || !slices.Equal(few.Closers, with) {
+			t.Errorf("%s alone: %v", first, err)
+		}
+		for second := range partners {
+			if second == first {
+				continue
+			}
+			_, err := SteamRequest(given(first, second))
+			var refused *fault.Invalid
+			if slices.Contains(with, second) {
+				if err != nil {
+					t.Errorf("%s with %s: %v", first, second, err)
+				}
+			} else if !errors.As(err, &refused) || !strings.Contains(refused.Limit, "pressure_kpa_abs with enthalpy_kj_per_kg") {
+				t.Errorf("%s with %s: %v", first, second, err)
+			}
+		}
+	}
+}
+
+// TestWantedAndNothingElse asks for each column alone.
+func TestWantedAndNothingElse(t *testing.T) {
+	answer := (&calandriav1.SteamStates{}).ProtoReflect().Descriptor().Fields()
+	always := []string{"index", "advisories", "failures", "provenance"}
+	asked := 0
+	for i := range answer.Len() {
+		name := string(answer.Get(i).Name())
+		if slices.Contains(always, name) {
+			continue
+		}
+		asked++
+		columns, err := SteamStatesRequest(&calandriav1.ComputeSteamStatesRequest{TemperatureC: []float64{100}, DrynessFraction: []float64{1}, Want: []string{name}})
+		if err != nil {
+			t.Fatal(err)
+		}
+		if err := columns.Compute(0); err != nil {
+			t.Fatal(err)
+		}
+		var got []string
+		columns.Answer().ProtoReflect().Range(func(f protoreflect.FieldDescriptor, _ protoreflect.Value) bool {
+			if !slices.Contains(always, string(f.Name())) {
+				got = append(got, string(f.Name()))
+			}
+			return true
+		})
+		if !slices.Equal(got, []string{name}) {
+			t.Errorf("%s wanted, got %v", name, got)
+		}
+	}
+	want := (&calandriav1.ComputeSteamStatesRequest{}).ProtoReflect().Descriptor().Fields().ByName("want")
+	rules, ok := proto.GetExtension(want.Options(), validate.E_Field).(*validate.FieldRules)
+	if in := rules.GetRepeated().GetItems().GetString().GetIn(); !ok || asked != len(in) {
+		t.Errorf("%d columns can be asked for, there are %d", len(in), asked)
 	}
 }
