@@ -96,49 +96,51 @@ func (g Graph) Under(m Matching) []bool {
 // part, by Tarjan's algorithm, each after those whose unknowns it needs.
 func (g Graph) Blocks(m Matching) [][]int {
 	n := len(g.Rows)
-	order := filled(n)
-	low := make([]int, n)
-	on := make([]bool, n)
-	var stack []int
-	var blocks [][]int
-	next := 0
-	var visit func(row int)
-	visit = func(row int) {
-		order[row], low[row] = next, next
-		next++
-		stack = append(stack, row)
-		on[row] = true
-		for _, column := range g.Rows[row] {
-			needed := m.Row[column]
-			if needed < 0 || needed == row {
-				continue
-			}
-			if order[needed] < 0 {
-				visit(needed)
-				low[row] = min(low[row], low[needed])
-			} else if on[needed] {
-				low[row] = min(low[row], order[needed])
-			}
-		}
-		if low[row] != order[row] {
-			return
-		}
-		var block []int
-		for {
-			last := stack[len(stack)-1]
-			stack = stack[:len(stack)-1]
-			on[last] = false
-			block = append(block, last)
-			if last == row {
-				break
-			}
-		}
-		blocks = append(blocks, block)
-	}
+	t := components{g: g, m: m, order: filled(n), low: make([]int, n), stack: make([]int, 0, n), rows: make([]int, 0, n), blocks: make([][]int, 0, n)}
 	for row := range n {
-		if order[row] < 0 {
-			visit(row)
+		if t.order[row] < 0 {
+			t.visit(row)
 		}
 	}
-	return blocks
+	return t.blocks
+}
+
+// components is Tarjan's algorithm at work.
+type components struct {
+	g          Graph
+	m          Matching
+	order, low []int // -1 for a row not visited; past all rows for one that is done
+	stack      []int
+	rows       []int // of all blocks, one block after the other
+	blocks     [][]int
+	next       int
+}
+
+func (t *components) visit(row int) {
+	t.order[row], t.low[row] = t.next, t.next
+	t.next++
+	t.stack = append(t.stack, row)
+	for _, column := range t.g.Rows[row] {
+		needed := t.m.Row[column]
+		if needed < 0 || needed == row {
+			continue
+		}
+		if t.order[needed] < 0 {
+			t.visit(needed)
+			t.low[row] = min(t.low[row], t.low[needed])
+		} else {
+			t.low[row] = min(t.low[row], t.order[needed])
+		}
+	}
+	if t.low[row] != t.order[row] {
+		return
+	}
+	first := len(t.rows)
+	for last := -1; last != row; {
+		last = t.stack[len(t.stack)-1]
+		t.stack = t.stack[:len(t.stack)-1]
+		t.order[last] = len(t.g.Rows)
+		t.rows = append(t.rows, last)
+	}
+	t.blocks = append(t.blocks, t.rows[first:len(t.rows):len(t.rows)])
 }

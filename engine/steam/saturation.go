@@ -17,14 +17,15 @@ func SaturationPressure(t quantity.Temperature) (quantity.Pressure, error) {
 	return quantity.Pressure(saturationPressure(float64(t))), nil
 }
 
-// SaturationSlope returns dp/dT in Pa/K of the saturation line at t: the
-// derivative of IAPWS R7-97(2012) Eq. 30, 273.15 K to 647.096 K.
-func SaturationSlope(t quantity.Temperature) (float64, error) {
+// SaturationSlope returns the pressure at which water boils at t as
+// SaturationPressure does, and dp/dT of the saturation line in Pa/K: the
+// derivative of IAPWS R7-97(2012) Eq. 30.
+func SaturationSlope(t quantity.Temperature) (p quantity.Pressure, slope float64, err error) {
 	if !(t >= coldest && t <= critical) {
-		return 0, outsideSaturation(t)
+		return 0, 0, outsideSaturation(t)
 	}
-	_, slope := equation30(float64(t))
-	return slope, nil
+	at, slope := equation30(float64(t))
+	return quantity.Pressure(at), slope, nil
 }
 
 func outsideSaturation(t quantity.Temperature) error {
@@ -150,10 +151,9 @@ func LiquidEnthalpy(t quantity.Temperature) (h, byT float64, err error) {
 	if !(t >= coldest && t <= regionsEnd) {
 		return 0, 0, outside("temperature", "K", float64(t), coldest, regionsEnd)
 	}
-	s := State{Temperature: t}
 	p, slope := equation30(float64(t))
-	fill1(&s, p, float64(t))
-	return s.Enthalpy, s.Cp + s.EnthalpyByPressure()*slope, nil
+	h, byP, cp := region1EnthalpySlopes(p, float64(t))
+	return h, cp + byP*slope, nil
 }
 
 // VapourEnthalpy returns the enthalpy in J/kg of vapour at p and t by region
@@ -167,9 +167,8 @@ func VapourEnthalpy(p quantity.Pressure, t quantity.Temperature) (h, byP, byT fl
 	if !(p >= lowestPressure && float64(p) <= limit) {
 		return 0, 0, 0, outside("pressure", "Pa", float64(p), lowestPressure, limit)
 	}
-	s := State{Temperature: t}
-	fill2(&s, float64(p), float64(t))
-	return s.Enthalpy, s.EnthalpyByPressure(), s.Cp, nil
+	h, byP, byT = region2EnthalpySlopes(float64(p), float64(t))
+	return h, byP, byT, nil
 }
 
 // equation30 returns p in Pa and dp/dT in Pa/K at t in K.

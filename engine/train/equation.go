@@ -52,34 +52,40 @@ type equation struct {
 	in       []Number
 }
 
+// standIn lists the numbers that stand in each relation, for a liquor whose
+// rise and enthalpy depend on solids.
+var standIn = [relations][]Number{
+	massBalance:           {FeedFlow, ProductFlow, VapourFlow, Entrainment},
+	solidsBalance:         {FeedFlow, FeedSolids, VapourFlow, SolidsOut},
+	energyBalance:         {FeedFlow, FeedTemperature, Duty, HeatLoss, VapourFlow, VapourSaturationTemperature, BoilingTemperature, FeedSolids, SolidsOut},
+	chestBalance:          {Duty, SteamFlow, Vent, SteamTemperature, Superheat, Dryness, ChestTemperature, Subcooling},
+	rateEquation:          {Duty, Area, Coefficient, GasSideResistance, drivingForce},
+	boilingEquilibrium:    {BoilingTemperature, VapourSaturationTemperature, SolidsOut},
+	vapourPressure:        {EffectPressure, VapourSaturationTemperature},
+	steamPressure:         {SteamPressure, SteamTemperature},
+	chestTemperature:      {ChestTemperature, SteamTemperature},
+	temperatureDifference: {drivingForce, ChestTemperature, BoilingTemperature},
+	productSolids:         {ProductSolids, SolidsOut},
+	productTemperature:    {ProductTemperature, BoilingTemperature},
+	evaporationSum:        {Evaporation, VapourFlow},
+	economyDefinition:     {Economy, VapourFlow, SteamFlow},
+}
+
 // equationsOf returns the equations of a plant that concentrates l. A number
 // stands in an equation only where it can change it, so that the structure of
 // a question tells the truth.
 func equationsOf(l *liquor.Liquor) []equation {
-	equilibrium := []Number{BoilingTemperature, VapourSaturationTemperature}
-	if l.RiseDependsOnSolids() {
-		equilibrium = append(equilibrium, SolidsOut)
+	list := make([]equation, relations)
+	for r := range relations {
+		list[r] = equation{r, standIn[r]}
 	}
-	energy := []Number{FeedFlow, FeedTemperature, Duty, HeatLoss, VapourFlow, VapourSaturationTemperature, BoilingTemperature}
-	if l.EnthalpyDependsOnSolids() {
-		energy = append(energy, FeedSolids, SolidsOut)
+	if !l.RiseDependsOnSolids() {
+		list[boilingEquilibrium].in = standIn[boilingEquilibrium][:2]
 	}
-	return []equation{
-		{massBalance, []Number{FeedFlow, ProductFlow, VapourFlow, Entrainment}},
-		{solidsBalance, []Number{FeedFlow, FeedSolids, VapourFlow, SolidsOut}},
-		{energyBalance, energy},
-		{chestBalance, []Number{Duty, SteamFlow, Vent, SteamTemperature, Superheat, Dryness, ChestTemperature, Subcooling}},
-		{rateEquation, []Number{Duty, Area, Coefficient, GasSideResistance, drivingForce}},
-		{boilingEquilibrium, equilibrium},
-		{vapourPressure, []Number{EffectPressure, VapourSaturationTemperature}},
-		{steamPressure, []Number{SteamPressure, SteamTemperature}},
-		{chestTemperature, []Number{ChestTemperature, SteamTemperature}},
-		{temperatureDifference, []Number{drivingForce, ChestTemperature, BoilingTemperature}},
-		{productSolids, []Number{ProductSolids, SolidsOut}},
-		{productTemperature, []Number{ProductTemperature, BoilingTemperature}},
-		{evaporationSum, []Number{Evaporation, VapourFlow}},
-		{economyDefinition, []Number{Economy, VapourFlow, SteamFlow}},
+	if !l.EnthalpyDependsOnSolids() {
+		list[energyBalance].in = standIn[energyBalance][:7]
 	}
+	return list
 }
 
 // state holds a value for every number of the plant.
@@ -216,11 +222,7 @@ func chestResidual(v *state, d *gradient) (miss, size float64, err error) {
 
 // saturationResidual: ln p = ln psat(t), which is nearly straight in 1/t.
 func saturationResidual(p, t Number, v *state, d *gradient) (miss, size float64, err error) {
-	saturation, err := steam.SaturationPressure(quantity.Temperature(v[t]))
-	if err != nil {
-		return 0, 0, err
-	}
-	slope, err := steam.SaturationSlope(quantity.Temperature(v[t]))
+	saturation, slope, err := steam.SaturationSlope(quantity.Temperature(v[t]))
 	if err != nil {
 		return 0, 0, err
 	}
@@ -231,11 +233,7 @@ func saturationResidual(p, t Number, v *state, d *gradient) (miss, size float64,
 // vapourEnthalpy is the enthalpy in J/kg of vapour at t and at the pressure
 // at which water boils at tw, both in K, with its derivatives.
 func vapourEnthalpy(tw, t float64) (h, byTw, byT float64, err error) {
-	p, err := steam.SaturationPressure(quantity.Temperature(tw))
-	if err != nil {
-		return 0, 0, 0, err
-	}
-	slope, err := steam.SaturationSlope(quantity.Temperature(tw))
+	p, slope, err := steam.SaturationSlope(quantity.Temperature(tw))
 	if err != nil {
 		return 0, 0, 0, err
 	}
@@ -254,9 +252,11 @@ func liveSteamEnthalpy(ts, superheat, dryness float64) (h float64, by liveSteamS
 	if err != nil {
 		return 0, by, err
 	}
-	dry, dryByTs, dryByT, err := vapourEnthalpy(ts, ts)
-	if err != nil {
-		return 0, by, err
+	dry, dryByTs, dryByT := hot, hotByTs, hotByT
+	if superheat != 0 {
+		if dry, dryByTs, dryByT, err = vapourEnthalpy(ts, ts); err != nil {
+			return 0, by, err
+		}
 	}
 	wet, wetByTs, err := steam.LiquidEnthalpy(quantity.Temperature(ts))
 	if err != nil {

@@ -126,6 +126,11 @@ func impossible(v *state, q *question) error {
 		return weakerProduct(v)
 	}
 	if known(FeedFlow) && known(ProductFlow) && v[ProductFlow] > v[FeedFlow] {
+		if known(FeedSolids) && v[FeedSolids] > 0 {
+			diluted := *v
+			diluted[SolidsOut] = v[FeedSolids] * v[FeedFlow] / v[ProductFlow]
+			return weakerProduct(&diluted)
+		}
 		return &fault.Infeasible{
 			Effect: "effect", Cause: fault.NegativeEvaporation, Field: VapourFlow.Path(), Amount: v[ProductFlow] - v[FeedFlow], Unit: "kg/s",
 			Detail: "More liquor would leave than enters.",

@@ -7,6 +7,8 @@ import (
 
 	"calandria.example/calandria/engine/fault"
 	"calandria.example/calandria/engine/numeric"
+	"calandria.example/calandria/engine/quantity"
+	"calandria.example/calandria/engine/steam"
 )
 
 const (
@@ -84,6 +86,8 @@ type search struct {
 	iterations int     // of all Newton runs
 	residual   float64 // least of the worst residuals of failed runs
 	where      relation
+	rows       [][]float64
+	memory     []float64
 	dependent  *fault.Specification // set when the numbers given turned out to leave some open
 }
 
@@ -117,9 +121,14 @@ func (s *search) roots(b *block, v state) []state {
 		s.dependent = &fault.Specification{Missing: 1, Closers: s.question.paths(b)}
 		return nil
 	}
-	if len(b.numbers) == 1 && !b.plain() {
-		if roots := s.scan(b, v); len(roots) > 0 {
-			return roots
+	if len(b.numbers) == 1 {
+		if root, done := s.direct(b, v); done {
+			return root
+		}
+		if !b.plain() {
+			if roots := s.scan(b, v); len(roots) > 0 {
+				return roots
+			}
 		}
 	}
 	var roots []state
@@ -144,6 +153,59 @@ func (s *search) roots(b *block, v state) []state {
 		}
 	}
 	return roots
+}
+
+// direct solves a single equation that its number stands in to the first power,
+// or that is the saturation line. done is false for any other.
+func (s *search) direct(b *block, v state) (root []state, done bool) {
+	n, e := b.numbers[0], b.equations[0]
+	switch {
+	case e.relation == vapourPressure || e.relation == steamPressure:
+		if details[n].kind == pressure {
+			p, err := steam.SaturationPressure(quantity.Temperature(v[e.in[1]]))
+			if err != nil {
+				return nil, true
+			}
+			v[n] = float64(p)
+		} else {
+			t, err := steam.SaturationTemperature(quantity.Pressure(v[e.in[0]]))
+			if err != nil {
+				return nil, true
+			}
+			v[n] = float64(t)
+		}
+	case e.relation.straightIn(n):
+		var d gradient
+		s.guess(b, 0, &v)
+		miss, size, err := residual(e.relation, s.question.liquor, &v, &d)
+		if err != nil || !(math.Abs(d[n])*reach(n, &v) > singular*size) {
+			return nil, false
+		}
+		v[n] -= miss / d[n]
+	default:
+		return nil, false
+	}
+	if low, high := bounds(n); s.physical && !(v[n] >= low-1e-9*math.Abs(low) && v[n] <= high) {
+		return nil, true
+	}
+	return []state{v}, true
+}
+
+// straightIn tells whether n stands in the relation to the first power only.
+func (r relation) straightIn(n Number) bool {
+	switch r {
+	case energyBalance:
+		return n == FeedFlow || n == VapourFlow || n == Duty || n == HeatLoss
+	case chestBalance:
+		return n == SteamFlow || n == Duty || n == Vent || n == Dryness
+	case rateEquation:
+		return n == Duty || n == Area || n == drivingForce
+	case boilingEquilibrium:
+		return n == BoilingTemperature
+	case vapourPressure, steamPressure:
+		return false
+	}
+	return true
 }
 
 // scan finds the roots of a single equation between the bounds of its number:
@@ -224,12 +286,7 @@ func same(b *block, a, c *state) bool {
 // of what its properties allow, and if the search is physical, inside of what
 // is possible at all.
 func (s *search) newton(b *block, v *state) bool {
-	n := len(b.numbers)
-	jacobian := make([][]float64, n)
-	for i := range jacobian {
-		jacobian[i] = make([]float64, n)
-	}
-	step, sizes := make([]float64, n), make([]float64, n)
+	jacobian, step, sizes := s.room(len(b.numbers))
 	worst, where, err := s.evaluate(b, v, jacobian, step, sizes)
 	if err != nil {
 		return false
@@ -268,6 +325,17 @@ func (s *search) newton(b *block, v *state) bool {
 		return s.fail(worst, where)
 	}
 	return true
+}
+
+// room returns the memory of one Newton run, the same for all of a search.
+func (s *search) room(n int) (jacobian [][]float64, step, sizes []float64) {
+	if len(s.rows) < n {
+		s.rows, s.memory = make([][]float64, n), make([]float64, n*n+2*n)
+	}
+	for i := range n {
+		s.rows[i] = s.memory[i*n : (i+1)*n]
+	}
+	return s.rows[:n], s.memory[n*n : n*n+n], s.memory[n*n+n : n*n+2*n]
 }
 
 func (s *search) fail(worst float64, where relation) bool {

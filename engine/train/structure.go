@@ -16,6 +16,7 @@ type block struct {
 // fixed leaves open. column tells which number a column is.
 func (q *question) graph(fixed *[unknowns]bool) (g numeric.Graph, column []Number) {
 	var index [unknowns]int
+	column = make([]Number, 0, unknowns)
 	for n := range unknowns {
 		index[n] = -1
 		if !fixed[n] {
@@ -25,12 +26,15 @@ func (q *question) graph(fixed *[unknowns]bool) (g numeric.Graph, column []Numbe
 	}
 	g.Columns = len(column)
 	g.Rows = make([][]int, len(q.equations))
+	places := make([]int, 0, 6*len(q.equations))
 	for i, e := range q.equations {
+		first := len(places)
 		for _, n := range e.in {
 			if index[n] >= 0 {
-				g.Rows[i] = append(g.Rows[i], index[n])
+				places = append(places, index[n])
 			}
 		}
+		g.Rows[i] = places[first:len(places):len(places)]
 	}
 	return g, column
 }
@@ -60,11 +64,14 @@ func (q *question) blocks() ([]block, error) {
 	}
 	groups := g.Blocks(m)
 	blocks := make([]block, len(groups))
+	equations, numbers := make([]equation, 0, len(q.equations)), make([]Number, 0, len(q.equations))
 	for i, group := range groups {
+		first := len(numbers)
 		for _, row := range group {
-			blocks[i].equations = append(blocks[i].equations, q.equations[row])
-			blocks[i].numbers = append(blocks[i].numbers, column[m.Column[row]])
+			equations = append(equations, q.equations[row])
+			numbers = append(numbers, column[m.Column[row]])
 		}
+		blocks[i] = block{equations[first:len(numbers):len(numbers)], numbers[first:len(numbers):len(numbers)]}
 	}
 	return blocks, nil
 }

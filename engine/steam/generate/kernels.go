@@ -176,6 +176,15 @@ func (r region) kernels() []kernel {
 	f.results = []int{f.scaled(gas, f.multiply(t, d[0])), f.scaled(-gas, d[1])}
 	put("EnthalpyHeat", "h in J/kg and cp in J/(kg K)", f, false, "h", "cp")
 
+	if r.name != "5" {
+		// (dh/dp)_T = v - T (dv/dT)_p = R T/p times pi tau gamma_pitau.
+		f, p, t = begin()
+		d = r.reduced(f, p, t, y, yy, xy)
+		rt := f.scaled(gas, t)
+		f.results = []int{f.multiply(rt, d[0]), f.divide(f.multiply(rt, d[2]), p), f.scaled(-gas, d[1])}
+		put("EnthalpySlopes", "h in J/kg, its derivative by p in J/(kg Pa) and cp in J/(kg K)", f, false, "h", "byP", "cp")
+	}
+
 	f, p, t = begin()
 	d = r.reduced(f, p, t, value, y, yy)
 	f.results = []int{f.scaled(gas, f.subtract(d[1], d[0])), f.scaled(-gas, d[2])}
