@@ -402,6 +402,83 @@ func rowOf(answer *calandriav1.SteamStates, row int, index int32) *calandriav1.S
 	return state
 }
 
+// TestCheckTellsWhatTheSolveWould: a question's check names the same conflict,
+// the same gap and the same defaults as its solve, at both doors.
+func TestCheckTellsWhatTheSolveWould(t *testing.T) {
+	s := start(t)
+	client := calandriav1.NewTrainServiceClient(s.connection)
+	for _, c := range []struct{ name, body string }{
+		{"a question", `{` + good + `}`},
+		{"too many", `{` + good + `,"evaporation_kg_per_h":750}`},
+		{"too few", `{"custom_liquor":{"rise_k":0,"specific_heat_kj_per_kg_k":4},"feed":{"flow_kg_per_h":1000},"steam":{"pressure_kpa_abs":200}}`},
+	} {
+		request := &calandriav1.SolveEffectRequest{}
+		if err := protojson.Unmarshal([]byte(c.body), request); err != nil {
+			t.Fatal(err)
+		}
+		check, err := client.CheckEffect(t.Context(), request)
+		if err != nil {
+			t.Fatalf("%s: %v", c.name, err)
+		}
+		_, body := s.ask(t, http.MethodPost, "/v1/effects:check", c.body)
+		var overREST calandriav1.EffectCheck
+		if err := protojson.Unmarshal([]byte(body), &overREST); err != nil || !proto.Equal(&overREST, check) {
+			t.Errorf("%s: REST differs from gRPC: %v %s", c.name, err, body)
+		}
+		solution, err := client.SolveEffect(t.Context(), request)
+		if check.GetDetermined() != (err == nil) {
+			t.Errorf("%s: %v, solving %v", c.name, check, err)
+		}
+		if err != nil {
+			named := append(check.GetConflict(), check.GetClosers()...)
+			for i, v := range statuses.Violations(status.Convert(err)) {
+				if i >= len(named) || v.GetField() != named[i] {
+					t.Errorf("%s: %v, solving %v", c.name, check, err)
+				}
+			}
+			continue
+		}
+		if len(check.GetUnknowns()) == 0 || !slices.Contains(check.GetUnknowns(), "effect.area_m2") || len(check.GetDefaultsApplied()) != len(solution.GetDefaultsApplied()) {
+			t.Errorf("%s: %v, solving %v", c.name, check, solution.GetDefaultsApplied())
+		}
+	}
+}
+
+// TestSensitivitiesInUnits: a sensitivity is in the units of its two fields. By
+// the solids balance a plant's product is proportional to its feed, and by the
+// rate equation its area is inverse to its coefficient.
+func TestSensitivitiesInUnits(t *testing.T) {
+	s := start(t)
+	_, body := s.ask(t, http.MethodPost, "/v1/effects:solve", `{`+good+`,"sensitivities_of":["product.flow_kg_per_h","effect.area_m2"]}`)
+	var solution calandriav1.EffectSolution
+	if err := protojson.Unmarshal([]byte(body), &solution); err != nil {
+		t.Fatalf("%v: %s", err, body)
+	}
+	found := 0
+	for _, m := range solution.GetSensitivities() {
+		switch m.GetOf() + " " + m.GetBy() {
+		case "product.flow_kg_per_h feed.flow_kg_per_h":
+			found++
+			if math.Abs(m.GetValue()-0.25) > 1e-9 || math.Abs(m.GetRelative()-1) > 1e-9 {
+				t.Errorf("%v", m)
+			}
+		case "effect.area_m2 effect.coefficient_w_per_m2_k":
+			found++
+			if math.Abs(m.GetRelative()+1) > 1e-9 || math.Abs(m.GetValue()/(-solution.GetEffect().GetAreaM2()/2000)-1) > 1e-9 {
+				t.Errorf("%v", m)
+			}
+		case "effect.area_m2 feed.temperature_c":
+			found++
+			if m.Relative != nil || !(m.GetValue() < 0) {
+				t.Errorf("%v", m)
+			}
+		}
+	}
+	if found != 3 {
+		t.Errorf("%d of 3: %s", found, body)
+	}
+}
+
 // TestWantedColumns: a request may ask for some columns only, and gets the same
 // numbers; over REST the answer is the same as over gRPC.
 func TestWantedColumns(t *testing.T) {

@@ -10,6 +10,7 @@ import (
 
 	"github.com/santhosh-tekuri/jsonschema/v6"
 
+	"calandria.example/calandria/engine"
 	"calandria.example/calandria/server/gateway"
 )
 
@@ -162,6 +163,14 @@ func TestBadInput(t *testing.T) {
 		{"override of the method", "POST", state, "", []string{"X-HTTP-Method-Override", "GET", "Content-Type", "application/x-www-form-urlencoded"}, 405, "METHOD_NOT_ALLOWED", nil},
 		{"no such path", "GET", "/v2/nothing", "", nil, 404, "NOT_FOUND", []string{"GET / lists"}},
 		{"repeats the balance", "POST", solve, `{` + good + `,"evaporation_kg_per_h":750}`, nil, 400, "OVER_SPECIFIED", []string{"feed.flow_kg_per_h", "evaporation_kg_per_h"}},
+		{"sensitivity of what is no number", "POST", solve, `{` + good + `,"sensitivities_of":["effect.nothing"]}`, nil, 400, "FIELD_INVALID", []string{"sensitivities_of[0]", "effect.area_m2"}},
+		{"sensitivity of what is given", "POST", solve, `{` + good + `,"sensitivities_of":["feed.flow_kg_per_h"]}`, nil, 400, "FIELD_INVALID", []string{"feed.flow_kg_per_h", "solved for"}},
+		{"sensitivity twice", "POST", solve, `{` + good + `,"sensitivities_of":["effect.area_m2","effect.area_m2"]}`, nil, 400, "FIELD_INVALID", []string{"each once"}},
+		{"another engine required", "POST", solve, `{` + good + `,"require_engine_version":"0.0.9"}`, nil, 412, "VERSION_MISMATCH", []string{"0.0.9", "require_engine_version"}},
+		{"another engine required for steam", "GET", state + "?pressure_kpa_abs=100&temperature_c=20&require_engine_version=7", "", nil, 412, "VERSION_MISMATCH", []string{"this engine is version"}},
+		{"another engine required for states", "POST", states, `{"pressure_kpa_abs":[1],"temperature_c":[1],"require_engine_version":"7"}`, nil, 412, "VERSION_MISMATCH", nil},
+		{"no engine required", "GET", saturation + "?temperature_c=20&require_engine_version=", "", nil, 400, "FIELD_INVALID", []string{"require_engine_version"}},
+		{"check of a bad field", "POST", "/v1/effects:check", `{` + good + `,"economy":-1}`, nil, 400, "FIELD_INVALID", []string{"economy"}},
 		{"weaker product", "POST", solve, strings.Replace(`{`+good+`}`, `"solids_fraction":0.4`, `"solids_fraction":0.05`, 1), nil, 422, "INFEASIBLE", []string{"weaker", "0.05 kg/kg"}},
 	} {
 		t.Run(c.name, func(t *testing.T) {
@@ -223,6 +232,10 @@ func TestAnswersAreAsDescribed(t *testing.T) {
 	}
 	for _, c := range []struct{ schema, method, path, body string }{
 		{"EffectSolution", "POST", "/v1/effects:solve", `{` + good + `}`},
+		{"EffectSolution", "POST", "/v1/effects:solve", `{` + good + `,"sensitivities_of":["effect.area_m2","product.flow_kg_per_h"],"require_engine_version":"` + engine.Version + `"}`},
+		{"EffectCheck", "POST", "/v1/effects:check", `{` + good + `}`},
+		{"EffectCheck", "POST", "/v1/effects:check", `{` + good + `,"evaporation_kg_per_h":750}`},
+		{"EffectCheck", "GET", "/v1/effects:check?custom_liquor.rise_k=0&custom_liquor.specific_heat_kj_per_kg_k=4", ""},
 		{"SteamState", "GET", "/v1/steam/state?pressure_kpa_abs=100&temperature_c=20", ""},
 		{"SteamState", "GET", "/v1/steam/state?pressure_kpa_abs=100&dryness_fraction=0.5", ""},
 		{"SteamState", "GET", "/v1/steam/state?enthalpy_kj_per_kg=2087.6&entropy_kj_per_kg_k=4.412", ""},

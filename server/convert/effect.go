@@ -1,6 +1,12 @@
 package convert
 
 import (
+	"errors"
+	"fmt"
+	"strconv"
+
+	"calandria.example/calandria/engine"
+	"calandria.example/calandria/engine/fault"
 	"calandria.example/calandria/engine/train"
 	calandriav1 "calandria.example/calandria/proto/calandria/v1"
 )
@@ -119,15 +125,73 @@ func EffectSolution(a *train.Answer) *calandriav1.EffectSolution {
 		DefaultsApplied: nil,
 		Advisories:      advisories(a.Advisories),
 		Provenance:      provenance(a.Models),
+		Sensitivities:   nil,
 	}
 	if solution.GetEconomy() > 0 {
 		specific := 1 / solution.GetEconomy()
 		solution.SpecificSteamConsumptionKgPerKg = &specific
 	}
-	for _, d := range a.Defaults {
-		solution.DefaultsApplied = append(solution.DefaultsApplied, &calandriav1.DefaultApplied{
-			Field: d.Number.Path(), Value: FromSI(d.Number.Path(), d.Value),
-		})
-	}
+	solution.DefaultsApplied = defaultsApplied(a.Defaults)
 	return solution
+}
+
+func defaultsApplied(list []train.Given) []*calandriav1.DefaultApplied {
+	var messages []*calandriav1.DefaultApplied
+	for _, d := range list {
+		messages = append(messages, &calandriav1.DefaultApplied{Field: d.Number.Path(), Value: FromSI(d.Number.Path(), d.Value)})
+	}
+	return messages
+}
+
+// SensitivitiesOf reads whose sensitivities a request asks for.
+func SensitivitiesOf(m *calandriav1.SolveEffectRequest) ([]train.Number, error) {
+	var of []train.Number
+	var problems []error
+	for i, path := range m.GetSensitivitiesOf() {
+		n, ok := train.NumberAt(path)
+		if !ok {
+			problems = append(problems, &fault.Invalid{
+				Field: fmt.Sprintf("sensitivities_of[%d]", i), Value: strconv.Quote(path), Limit: "a path of the request, such as effect.area_m2",
+				WayOut: "name a number that the request leaves out",
+			})
+		}
+		of = append(of, n)
+	}
+	return of, errors.Join(problems...)
+}
+
+// Sensitivities makes messages of sensitivities at an answer, each in the units
+// of its two fields.
+func Sensitivities(a *train.Answer, list []train.Sensitivity) []*calandriav1.Sensitivity {
+	messages := make([]*calandriav1.Sensitivity, len(list))
+	for i, s := range list {
+		of, by := unitOf(s.Of.Path()), unitOf(s.By.Path())
+		m := &calandriav1.Sensitivity{Of: s.Of.Path(), By: s.By.Path(), Value: s.Value * by.factor / of.factor, Relative: nil}
+		x, y := a.Value[s.By], a.Value[s.Of]
+		if x != 0 && y != 0 && of.offset == 0 && by.offset == 0 {
+			m.Relative = pointer(s.Value * x / y)
+		}
+		messages[i] = m
+	}
+	return messages
+}
+
+// EffectCheck makes the answer about a question's structure; too many or too
+// few numbers are part of it, any other fault is an error.
+func EffectCheck(c train.Check, err error) (*calandriav1.EffectCheck, error) {
+	m := &calandriav1.EffectCheck{
+		Determined: err == nil, Unknowns: nil, DefaultsApplied: defaultsApplied(c.Defaults),
+		Conflict: nil, Missing: 0, Closers: nil, EngineVersion: engine.Version,
+	}
+	for _, n := range c.Unknowns {
+		m.Unknowns = append(m.Unknowns, n.Path())
+	}
+	var specification *fault.Specification
+	switch {
+	case errors.As(err, &specification):
+		m.Conflict, m.Missing, m.Closers = specification.Conflict, int32(specification.Missing), specification.Closers
+	case err != nil:
+		return nil, err
+	}
+	return m, nil
 }

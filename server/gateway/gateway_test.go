@@ -156,7 +156,7 @@ func checkAnswered(t *testing.T, code int, body string, header http.Header) {
 func FuzzBody(f *testing.F) {
 	for _, seed := range []string{
 		`{}`, `{"custom_liquor":{"rise_k":0,"specific_heat_kj_per_kg_k":4},"feed":{"flow_kg_per_h":1000,"solids_fraction":0.1,"temperature_c":50},"product":{"solids_fraction":0.4},"steam":{"pressure_kpa_abs":200},"effect":{"pressure_kpa_abs":20,"coefficient_w_per_m2_k":2000}}`,
-		`{"custom_liquor":{"duhring":{"lines":[{"solids_fraction":0.5,"slope":1.1,"intercept_c":30}]},"enthalpy_table":{"rows":[{"solids_fraction":0.1,"points":[{"temperature_c":20,"enthalpy_kj_per_kg":80}]}]}},"find":["effect.vent_fraction"],"economy":1e0}`,
+		`{"custom_liquor":{"duhring":{"lines":[{"solids_fraction":0.5,"slope":1.1,"intercept_c":30}]},"enthalpy_table":{"rows":[{"solids_fraction":0.1,"points":[{"temperature_c":20,"enthalpy_kj_per_kg":80}]}]}},"find":["effect.vent_fraction"],"economy":1e0,"sensitivities_of":["effect.area_m2"],"require_engine_version":"0"}`,
 		`{"economy":NaN}`, `{"economy":1,5}`, `[[[[`, `{"a":{"b":`, "\"\xff\"", `{"feed":null}`, `{"economy":"1,5"} {}`, `{"custom_liquor":{"source":"\ud800","rise_k":0,"specific_heat_kj_per_kg_k":4}}`,
 		`{"pressure_kpa_abs":[100,-1,2e4],"enthalpy_kj_per_kg":[1e3,2,3],"want":["region","viscosity_pa_s"]}`, `{"enthalpy_kj_per_kg":[2087.5],"entropy_kj_per_kg_k":[4.412]}`,
 	} {
@@ -171,7 +171,7 @@ func FuzzBody(f *testing.F) {
 				}
 			}
 		}
-		for _, path := range []string{"/v1/effects:solve", "/v1/steam/states:compute"} {
+		for _, path := range []string{"/v1/effects:solve", "/v1/effects:check", "/v1/steam/states:compute"} {
 			code, text, header := ask(g, "POST", path, body)
 			checkAnswered(t, code, text, header)
 		}

@@ -56,6 +56,7 @@ var titles = map[calandriav1.Reason]string{
 	calandriav1.Reason_REASON_METHOD_NOT_ALLOWED:     "Not with this method",
 	calandriav1.Reason_REASON_UNSUPPORTED_MEDIA_TYPE: "Not in this format",
 	calandriav1.Reason_REASON_UNAVAILABLE:            "Not ready",
+	calandriav1.Reason_REASON_VERSION_MISMATCH:       "Another version of the engine is required",
 }
 
 // refuse writes a refusal: a problem, or one line where a value was picked.

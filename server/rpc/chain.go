@@ -12,6 +12,7 @@ import (
 	"google.golang.org/protobuf/proto"
 	"google.golang.org/protobuf/reflect/protoreflect"
 
+	"calandria.example/calandria/engine"
 	calandriav1 "calandria.example/calandria/proto/calandria/v1"
 	"calandria.example/calandria/server/statuses"
 	"calandria.example/calandria/server/telemetry"
@@ -19,8 +20,8 @@ import (
 
 // Chain returns the interceptors that every call passes, whichever door it
 // came through, outermost first: id, log line and recovery, mapping of faults,
-// time limit, size and unknown fields, the protos' own rules, and a look at
-// the answer.
+// time limit, size and unknown fields, the protos' own rules, the required
+// version, and a look at the answer.
 func Chain(log *slog.Logger, longest time.Duration, requestBytes int) ([]grpc.UnaryServerInterceptor, error) {
 	validator, err := protovalidate.New(
 		protovalidate.WithMessages(&calandriav1.GetSteamStateRequest{}, &calandriav1.GetSaturationRequest{}, &calandriav1.ComputeSteamStatesRequest{}, &calandriav1.SolveEffectRequest{}),
@@ -29,7 +30,7 @@ func Chain(log *slog.Logger, longest time.Duration, requestBytes int) ([]grpc.Un
 		return nil, fmt.Errorf("rules of the protos: %w", err)
 	}
 	return []grpc.UnaryServerInterceptor{
-		telemetry.Unary(log), mapFaults(log), limitTime(longest), checkShape(requestBytes), checkRules(validator), checkAnswer,
+		telemetry.Unary(log), mapFaults(log), limitTime(longest), checkShape(requestBytes), checkRules(validator), checkVersion, checkAnswer,
 	}, nil
 }
 
@@ -127,6 +128,17 @@ func checkRules(validator protovalidate.Validator) grpc.UnaryServerInterceptor {
 		}
 		return handler(ctx, request)
 	}
+}
+
+// checkVersion refuses a request that requires another version of the engine:
+// its caller wants the same digits again.
+func checkVersion(ctx context.Context, request any, _ *grpc.UnaryServerInfo, handler grpc.UnaryHandler) (any, error) {
+	if m, ok := request.(interface{ GetRequireEngineVersion() string }); ok {
+		if required := m.GetRequireEngineVersion(); required != "" && required != engine.Version {
+			return nil, statuses.VersionMismatch("require_engine_version", required, engine.Version).Err()
+		}
+	}
+	return handler(ctx, request)
 }
 
 // checkAnswer lets no number out that is not one.

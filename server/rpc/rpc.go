@@ -59,11 +59,33 @@ func (s *Services) SolveEffect(_ context.Context, request *calandriav1.SolveEffe
 	if err != nil {
 		return nil, err
 	}
+	of, err := convert.SensitivitiesOf(request)
+	if err != nil {
+		return nil, err
+	}
 	answer, err := train.Solve(plant)
 	if err != nil {
 		return nil, err
 	}
-	return convert.EffectSolution(answer), nil
+	solution := convert.EffectSolution(answer)
+	if len(of) > 0 {
+		list, err := train.Sensitivities(plant, answer, of)
+		if err != nil {
+			return nil, err
+		}
+		solution.Sensitivities = convert.Sensitivities(answer, list)
+	}
+	return solution, nil
+}
+
+// CheckEffect tells what a question about one effect amounts to.
+func (s *Services) CheckEffect(_ context.Context, request *calandriav1.SolveEffectRequest) (*calandriav1.EffectCheck, error) {
+	plant, err := convert.EffectRequest(request)
+	if err != nil {
+		return nil, err
+	}
+	check, err := train.CheckQuestion(plant)
+	return convert.EffectCheck(check, err)
 }
 
 // GetEngine tells version, models and limits.

@@ -43,6 +43,7 @@ var mappings = map[calandriav1.Reason]mapping{
 	calandriav1.Reason_REASON_METHOD_NOT_ALLOWED:     {codes.Unimplemented, 405},
 	calandriav1.Reason_REASON_UNSUPPORTED_MEDIA_TYPE: {codes.InvalidArgument, 415},
 	calandriav1.Reason_REASON_UNAVAILABLE:            {codes.Unavailable, 503},
+	calandriav1.Reason_REASON_VERSION_MISMATCH:       {codes.FailedPrecondition, 412},
 }
 
 // HTTP returns the HTTP status of a reason.
@@ -132,6 +133,15 @@ func TooLarge(what string, sent, limit int) *status.Status {
 		fmt.Sprintf("The %s is too large: %d bytes or more were sent, %d are read. Do not send it again; make it smaller.", what, sent, limit),
 		map[string]string{"sent": strconv.Itoa(sent), "limit": strconv.Itoa(limit)},
 		&calandriav1.Violation{Value: fmt.Sprintf("%d bytes", sent), Limit: fmt.Sprintf("%d bytes", limit), Detail: "The " + what + " is too large."})
+}
+
+// VersionMismatch makes the status of a request that requires another version of
+// the engine than this one.
+func VersionMismatch(field, required, is string) *status.Status {
+	message := fmt.Sprintf("%s is %q; this engine is version %s. Ask one of the version that is required, or drop %s.", field, required, is, field)
+	return New(calandriav1.Reason_REASON_VERSION_MISMATCH, message,
+		map[string]string{"required": required, "engine_version": is},
+		&calandriav1.Violation{Field: field, Value: strconv.Quote(required), Limit: is, Detail: message})
 }
 
 // Internal makes the status of a fault of the service itself. The caller

@@ -57,6 +57,8 @@ const (
 	Reason_REASON_UNSUPPORTED_MEDIA_TYPE Reason = 13
 	// The service is starting or stopping; retry elsewhere or later.
 	Reason_REASON_UNAVAILABLE Reason = 14
+	// The request requires another version of the engine.
+	Reason_REASON_VERSION_MISMATCH Reason = 15
 )
 
 // Enum value maps for Reason.
@@ -77,6 +79,7 @@ var (
 		12: "REASON_METHOD_NOT_ALLOWED",
 		13: "REASON_UNSUPPORTED_MEDIA_TYPE",
 		14: "REASON_UNAVAILABLE",
+		15: "REASON_VERSION_MISMATCH",
 	}
 	Reason_value = map[string]int32{
 		"REASON_UNSPECIFIED":            0,
@@ -94,6 +97,7 @@ var (
 		"REASON_METHOD_NOT_ALLOWED":     12,
 		"REASON_UNSUPPORTED_MEDIA_TYPE": 13,
 		"REASON_UNAVAILABLE":            14,
+		"REASON_VERSION_MISMATCH":       15,
 	}
 )
 
@@ -261,7 +265,7 @@ const file_calandria_v1_error_proto_rawDesc = "" +
 	"Violations\x127\n" +
 	"\n" +
 	"violations\x18\x01 \x03(\v2\x17.calandria.v1.ViolationR\n" +
-	"violations*\x87\x03\n" +
+	"violations*\xa4\x03\n" +
 	"\x06Reason\x12\x16\n" +
 	"\x12REASON_UNSPECIFIED\x10\x00\x12\x18\n" +
 	"\x14REASON_FIELD_INVALID\x10\x01\x12\x1e\n" +
@@ -278,7 +282,8 @@ const file_calandria_v1_error_proto_rawDesc = "" +
 	"\x0fREASON_INTERNAL\x10\v\x12\x1d\n" +
 	"\x19REASON_METHOD_NOT_ALLOWED\x10\f\x12!\n" +
 	"\x1dREASON_UNSUPPORTED_MEDIA_TYPE\x10\r\x12\x16\n" +
-	"\x12REASON_UNAVAILABLE\x10\x0eB<Z:calandria.example/calandria/proto/calandria/v1;calandriav1b\x06proto3"
+	"\x12REASON_UNAVAILABLE\x10\x0e\x12\x1b\n" +
+	"\x17REASON_VERSION_MISMATCH\x10\x0fB<Z:calandria.example/calandria/proto/calandria/v1;calandriav1b\x06proto3"
 
 var (
 	file_calandria_v1_error_proto_rawDescOnce sync.Once

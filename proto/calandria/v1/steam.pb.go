@@ -106,8 +106,10 @@ type GetSteamStateRequest struct {
 	EnthalpyKjPerKg *float64 `protobuf:"fixed64,4,opt,name=enthalpy_kj_per_kg,json=enthalpyKjPerKg,proto3,oneof" json:"enthalpy_kj_per_kg,omitempty"`
 	// Specific entropy; 0 for saturated liquid at the triple point.
 	EntropyKjPerKgK *float64 `protobuf:"fixed64,5,opt,name=entropy_kj_per_kg_k,json=entropyKjPerKgK,proto3,oneof" json:"entropy_kj_per_kg_k,omitempty"`
-	unknownFields   protoimpl.UnknownFields
-	sizeCache       protoimpl.SizeCache
+	// Version of the engine that must answer; any other refuses.
+	RequireEngineVersion *string `protobuf:"bytes,6,opt,name=require_engine_version,json=requireEngineVersion,proto3,oneof" json:"require_engine_version,omitempty"`
+	unknownFields        protoimpl.UnknownFields
+	sizeCache            protoimpl.SizeCache
 }
 
 func (x *GetSteamStateRequest) Reset() {
@@ -173,6 +175,13 @@ func (x *GetSteamStateRequest) GetEntropyKjPerKgK() float64 {
 		return *x.EntropyKjPerKgK
 	}
 	return 0
+}
+
+func (x *GetSteamStateRequest) GetRequireEngineVersion() string {
+	if x != nil && x.RequireEngineVersion != nil {
+		return *x.RequireEngineVersion
+	}
+	return ""
 }
 
 // SteamState is one state of water or steam. What does not exist in a state
@@ -385,9 +394,11 @@ type GetSaturationRequest struct {
 	// Absolute pressure.
 	PressureKpaAbs *float64 `protobuf:"fixed64,1,opt,name=pressure_kpa_abs,json=pressureKpaAbs,proto3,oneof" json:"pressure_kpa_abs,omitempty"`
 	// Temperature.
-	TemperatureC  *float64 `protobuf:"fixed64,2,opt,name=temperature_c,json=temperatureC,proto3,oneof" json:"temperature_c,omitempty"`
-	unknownFields protoimpl.UnknownFields
-	sizeCache     protoimpl.SizeCache
+	TemperatureC *float64 `protobuf:"fixed64,2,opt,name=temperature_c,json=temperatureC,proto3,oneof" json:"temperature_c,omitempty"`
+	// Version of the engine that must answer; any other refuses.
+	RequireEngineVersion *string `protobuf:"bytes,3,opt,name=require_engine_version,json=requireEngineVersion,proto3,oneof" json:"require_engine_version,omitempty"`
+	unknownFields        protoimpl.UnknownFields
+	sizeCache            protoimpl.SizeCache
 }
 
 func (x *GetSaturationRequest) Reset() {
@@ -432,6 +443,13 @@ func (x *GetSaturationRequest) GetTemperatureC() float64 {
 		return *x.TemperatureC
 	}
 	return 0
+}
+
+func (x *GetSaturationRequest) GetRequireEngineVersion() string {
+	if x != nil && x.RequireEngineVersion != nil {
+		return *x.RequireEngineVersion
+	}
+	return ""
 }
 
 // Saturation is water and steam in equilibrium.
@@ -549,9 +567,11 @@ type ComputeSteamStatesRequest struct {
 	// Specific entropies.
 	EntropyKjPerKgK []float64 `protobuf:"fixed64,5,rep,packed,name=entropy_kj_per_kg_k,json=entropyKjPerKgK,proto3" json:"entropy_kj_per_kg_k,omitempty"`
 	// Names of the columns wanted in the answer; all of them when left out.
-	Want          []string `protobuf:"bytes,6,rep,name=want,proto3" json:"want,omitempty"`
-	unknownFields protoimpl.UnknownFields
-	sizeCache     protoimpl.SizeCache
+	Want []string `protobuf:"bytes,6,rep,name=want,proto3" json:"want,omitempty"`
+	// Version of the engine that must answer; any other refuses.
+	RequireEngineVersion *string `protobuf:"bytes,7,opt,name=require_engine_version,json=requireEngineVersion,proto3,oneof" json:"require_engine_version,omitempty"`
+	unknownFields        protoimpl.UnknownFields
+	sizeCache            protoimpl.SizeCache
 }
 
 func (x *ComputeSteamStatesRequest) Reset() {
@@ -624,6 +644,13 @@ func (x *ComputeSteamStatesRequest) GetWant() []string {
 		return x.Want
 	}
 	return nil
+}
+
+func (x *ComputeSteamStatesRequest) GetRequireEngineVersion() string {
+	if x != nil && x.RequireEngineVersion != nil {
+		return *x.RequireEngineVersion
+	}
+	return ""
 }
 
 // SteamStates are the states that could be computed, in columns of the same
@@ -1034,18 +1061,20 @@ var File_calandria_v1_steam_proto protoreflect.FileDescriptor
 
 const file_calandria_v1_steam_proto_rawDesc = "" +
 	"\n" +
-	"\x18calandria/v1/steam.proto\x12\fcalandria.v1\x1a\x1bbuf/validate/validate.proto\x1a\x18calandria/v1/error.proto\x1a\x1dcalandria/v1/provenance.proto\x1a\x1cgoogle/api/annotations.proto\"\xf6\x03\n" +
+	"\x18calandria/v1/steam.proto\x12\fcalandria.v1\x1a\x1bbuf/validate/validate.proto\x1a\x18calandria/v1/error.proto\x1a\x1dcalandria/v1/provenance.proto\x1a\x1cgoogle/api/annotations.proto\"\xd7\x04\n" +
 	"\x14GetSteamStateRequest\x12H\n" +
 	"\x10pressure_kpa_abs\x18\x01 \x01(\x01B\x19\xbaH\x16\x12\x14@\x01\x19\x00\x00\x00\x00\x00j\xf8@!\x00\x00\x00\x00\x00\x00\x00\x00H\x00R\x0epressureKpaAbs\x88\x01\x01\x12C\n" +
 	"\rtemperature_c\x18\x02 \x01(\x01B\x19\xbaH\x16\x12\x14@\x01\x19\x00\x00\x00\x00\x00@\x9f@)\x00\x00\x00\x00\x00\x00\x00\x00H\x01R\ftemperatureC\x88\x01\x01\x12I\n" +
 	"\x10dryness_fraction\x18\x03 \x01(\x01B\x19\xbaH\x16\x12\x14@\x01\x19\x00\x00\x00\x00\x00\x00\xf0?)\x00\x00\x00\x00\x00\x00\x00\x00H\x02R\x0fdrynessFraction\x88\x01\x01\x12K\n" +
 	"\x12enthalpy_kj_per_kg\x18\x04 \x01(\x01B\x19\xbaH\x16\x12\x14@\x01\x19\x00\x00\x00\x00\x00\x88\xc3@)\x00\x00\x00\x00\x00@\x8f\xc0H\x03R\x0fenthalpyKjPerKg\x88\x01\x01\x12L\n" +
-	"\x13entropy_kj_per_kg_k\x18\x05 \x01(\x01B\x19\xbaH\x16\x12\x14@\x01\x19\x00\x00\x00\x00\x00\x00>@)\x00\x00\x00\x00\x00\x00$\xc0H\x04R\x0fentropyKjPerKgK\x88\x01\x01B\x13\n" +
+	"\x13entropy_kj_per_kg_k\x18\x05 \x01(\x01B\x19\xbaH\x16\x12\x14@\x01\x19\x00\x00\x00\x00\x00\x00>@)\x00\x00\x00\x00\x00\x00$\xc0H\x04R\x0fentropyKjPerKgK\x88\x01\x01\x12D\n" +
+	"\x16require_engine_version\x18\x06 \x01(\tB\t\xbaH\x06r\x04\x10\x01\x18(H\x05R\x14requireEngineVersion\x88\x01\x01B\x13\n" +
 	"\x11_pressure_kpa_absB\x10\n" +
 	"\x0e_temperature_cB\x13\n" +
 	"\x11_dryness_fractionB\x15\n" +
 	"\x13_enthalpy_kj_per_kgB\x16\n" +
-	"\x14_entropy_kj_per_kg_k\"\xd3\b\n" +
+	"\x14_entropy_kj_per_kg_kB\x19\n" +
+	"\x17_require_engine_version\"\xd3\b\n" +
 	"\n" +
 	"SteamState\x12\x16\n" +
 	"\x06region\x18\x01 \x01(\x05R\x06region\x12)\n" +
@@ -1077,12 +1106,14 @@ const file_calandria_v1_steam_proto_rawDesc = "" +
 	"\x17_speed_of_sound_m_per_sB\x11\n" +
 	"\x0f_viscosity_pa_sB\x19\n" +
 	"\x17_conductivity_w_per_m_kB\x1a\n" +
-	"\x18_surface_tension_n_per_m\"\xcc\x01\n" +
+	"\x18_surface_tension_n_per_m\"\xad\x02\n" +
 	"\x14GetSaturationRequest\x12H\n" +
 	"\x10pressure_kpa_abs\x18\x01 \x01(\x01B\x19\xbaH\x16\x12\x14@\x01\x19\x00\x00\x00\x00\x00j\xf8@!\x00\x00\x00\x00\x00\x00\x00\x00H\x00R\x0epressureKpaAbs\x88\x01\x01\x12C\n" +
-	"\rtemperature_c\x18\x02 \x01(\x01B\x19\xbaH\x16\x12\x14@\x01\x19\x00\x00\x00\x00\x00@\x9f@)\x00\x00\x00\x00\x00\x00\x00\x00H\x01R\ftemperatureC\x88\x01\x01B\x13\n" +
+	"\rtemperature_c\x18\x02 \x01(\x01B\x19\xbaH\x16\x12\x14@\x01\x19\x00\x00\x00\x00\x00@\x9f@)\x00\x00\x00\x00\x00\x00\x00\x00H\x01R\ftemperatureC\x88\x01\x01\x12D\n" +
+	"\x16require_engine_version\x18\x03 \x01(\tB\t\xbaH\x06r\x04\x10\x01\x18(H\x02R\x14requireEngineVersion\x88\x01\x01B\x13\n" +
 	"\x11_pressure_kpa_absB\x10\n" +
-	"\x0e_temperature_c\"\xe3\x02\n" +
+	"\x0e_temperature_cB\x19\n" +
+	"\x17_require_engine_version\"\xe3\x02\n" +
 	"\n" +
 	"Saturation\x12#\n" +
 	"\rtemperature_c\x18\x01 \x01(\x01R\ftemperatureC\x12(\n" +
@@ -1095,7 +1126,7 @@ const file_calandria_v1_steam_proto_rawDesc = "" +
 	"advisories\x128\n" +
 	"\n" +
 	"provenance\x18\a \x01(\v2\x18.calandria.v1.ProvenanceR\n" +
-	"provenance\"\x9f\x05\n" +
+	"provenance\"\x80\x06\n" +
 	"\x19ComputeSteamStatesRequest\x124\n" +
 	"\x10pressure_kpa_abs\x18\x01 \x03(\x01B\n" +
 	"\xbaH\a\x92\x01\x04\x10\xa0\x9c\x01R\x0epressureKpaAbs\x12/\n" +
@@ -1107,7 +1138,9 @@ const file_calandria_v1_steam_proto_rawDesc = "" +
 	"\xbaH\a\x92\x01\x04\x10\xa0\x9c\x01R\x0fenthalpyKjPerKg\x128\n" +
 	"\x13entropy_kj_per_kg_k\x18\x05 \x03(\x01B\n" +
 	"\xbaH\a\x92\x01\x04\x10\xa0\x9c\x01R\x0fentropyKjPerKgK\x12\xf0\x02\n" +
-	"\x04want\x18\x06 \x03(\tB\xdb\x02\xbaH\xd7\x02\x92\x01\xd3\x02\x10\x10\x18\x01\"\xcc\x02r\xc9\x02R\x06regionR\x05phaseR\x10pressure_kpa_absR\rtemperature_cR\x10dryness_fractionR\x19specific_volume_m3_per_kgR\x11density_kg_per_m3R\x12enthalpy_kj_per_kgR\x19internal_energy_kj_per_kgR\x13entropy_kj_per_kg_kR\x1cspecific_heat_cp_kj_per_kg_kR\x1cspecific_heat_cv_kj_per_kg_kR\x16speed_of_sound_m_per_sR\x0eviscosity_pa_sR\x16conductivity_w_per_m_kR\x17surface_tension_n_per_mR\x04want\"\x8d\t\n" +
+	"\x04want\x18\x06 \x03(\tB\xdb\x02\xbaH\xd7\x02\x92\x01\xd3\x02\x10\x10\x18\x01\"\xcc\x02r\xc9\x02R\x06regionR\x05phaseR\x10pressure_kpa_absR\rtemperature_cR\x10dryness_fractionR\x19specific_volume_m3_per_kgR\x11density_kg_per_m3R\x12enthalpy_kj_per_kgR\x19internal_energy_kj_per_kgR\x13entropy_kj_per_kg_kR\x1cspecific_heat_cp_kj_per_kg_kR\x1cspecific_heat_cv_kj_per_kg_kR\x16speed_of_sound_m_per_sR\x0eviscosity_pa_sR\x16conductivity_w_per_m_kR\x17surface_tension_n_per_mR\x04want\x12D\n" +
+	"\x16require_engine_version\x18\a \x01(\tB\t\xbaH\x06r\x04\x10\x01\x18(H\x00R\x14requireEngineVersion\x88\x01\x01B\x19\n" +
+	"\x17_require_engine_version\"\x8d\t\n" +
 	"\vSteamStates\x12\x14\n" +
 	"\x05index\x18\x01 \x03(\x05R\x05index\x12\x16\n" +
 	"\x06region\x18\x02 \x03(\x05R\x06region\x12)\n" +
@@ -1235,6 +1268,7 @@ func file_calandria_v1_steam_proto_init() {
 	file_calandria_v1_steam_proto_msgTypes[0].OneofWrappers = []any{}
 	file_calandria_v1_steam_proto_msgTypes[1].OneofWrappers = []any{}
 	file_calandria_v1_steam_proto_msgTypes[2].OneofWrappers = []any{}
+	file_calandria_v1_steam_proto_msgTypes[4].OneofWrappers = []any{}
 	type x struct{}
 	out := protoimpl.TypeBuilder{
 		File: protoimpl.DescBuilder{

@@ -43,9 +43,14 @@ type SolveEffectRequest struct {
 	// Water evaporated per live steam, kg/kg.
 	Economy *float64 `protobuf:"fixed64,8,opt,name=economy,proto3,oneof" json:"economy,omitempty"`
 	// Paths of numbers to solve for that would otherwise be 0.
-	Find          []string `protobuf:"bytes,9,rep,name=find,proto3" json:"find,omitempty"`
-	unknownFields protoimpl.UnknownFields
-	sizeCache     protoimpl.SizeCache
+	Find []string `protobuf:"bytes,9,rep,name=find,proto3" json:"find,omitempty"`
+	// Paths of numbers that are solved for, whose sensitivities to every given or
+	// defaulted number the answer shall hold.
+	SensitivitiesOf []string `protobuf:"bytes,10,rep,name=sensitivities_of,json=sensitivitiesOf,proto3" json:"sensitivities_of,omitempty"`
+	// Version of the engine that must answer; any other refuses.
+	RequireEngineVersion *string `protobuf:"bytes,11,opt,name=require_engine_version,json=requireEngineVersion,proto3,oneof" json:"require_engine_version,omitempty"`
+	unknownFields        protoimpl.UnknownFields
+	sizeCache            protoimpl.SizeCache
 }
 
 func (x *SolveEffectRequest) Reset() {
@@ -132,6 +137,20 @@ func (x *SolveEffectRequest) GetFind() []string {
 		return x.Find
 	}
 	return nil
+}
+
+func (x *SolveEffectRequest) GetSensitivitiesOf() []string {
+	if x != nil {
+		return x.SensitivitiesOf
+	}
+	return nil
+}
+
+func (x *SolveEffectRequest) GetRequireEngineVersion() string {
+	if x != nil && x.RequireEngineVersion != nil {
+		return *x.RequireEngineVersion
+	}
+	return ""
 }
 
 // Stream is a flow of liquor.
@@ -843,7 +862,9 @@ type EffectSolution struct {
 	// Remarks.
 	Advisories []*Advisory `protobuf:"bytes,10,rep,name=advisories,proto3" json:"advisories,omitempty"`
 	// What the numbers rest on.
-	Provenance    *Provenance `protobuf:"bytes,11,opt,name=provenance,proto3" json:"provenance,omitempty"`
+	Provenance *Provenance `protobuf:"bytes,11,opt,name=provenance,proto3" json:"provenance,omitempty"`
+	// Sensitivities that the request asked for.
+	Sensitivities []*Sensitivity `protobuf:"bytes,12,rep,name=sensitivities,proto3" json:"sensitivities,omitempty"`
 	unknownFields protoimpl.UnknownFields
 	sizeCache     protoimpl.SizeCache
 }
@@ -955,11 +976,195 @@ func (x *EffectSolution) GetProvenance() *Provenance {
 	return nil
 }
 
+func (x *EffectSolution) GetSensitivities() []*Sensitivity {
+	if x != nil {
+		return x.Sensitivities
+	}
+	return nil
+}
+
+// Sensitivity is how much a result moves with a given number, all other given
+// numbers held: exact, from the equations at the answer.
+type Sensitivity struct {
+	state protoimpl.MessageState `protogen:"open.v1"`
+	// Path of the result.
+	Of string `protobuf:"bytes,1,opt,name=of,proto3" json:"of,omitempty"`
+	// Path of the given or defaulted number.
+	By string `protobuf:"bytes,2,opt,name=by,proto3" json:"by,omitempty"`
+	// Change of the result per change of the given number, each in the unit of
+	// its field.
+	Value float64 `protobuf:"fixed64,3,opt,name=value,proto3" json:"value,omitempty"`
+	// Relative change of the result per relative change of the given number;
+	// absent where one of the two is 0 or a temperature.
+	Relative      *float64 `protobuf:"fixed64,4,opt,name=relative,proto3,oneof" json:"relative,omitempty"`
+	unknownFields protoimpl.UnknownFields
+	sizeCache     protoimpl.SizeCache
+}
+
+func (x *Sensitivity) Reset() {
+	*x = Sensitivity{}
+	mi := &file_calandria_v1_train_proto_msgTypes[8]
+	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+	ms.StoreMessageInfo(mi)
+}
+
+func (x *Sensitivity) String() string {
+	return protoimpl.X.MessageStringOf(x)
+}
+
+func (*Sensitivity) ProtoMessage() {}
+
+func (x *Sensitivity) ProtoReflect() protoreflect.Message {
+	mi := &file_calandria_v1_train_proto_msgTypes[8]
+	if x != nil {
+		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+		if ms.LoadMessageInfo() == nil {
+			ms.StoreMessageInfo(mi)
+		}
+		return ms
+	}
+	return mi.MessageOf(x)
+}
+
+// Deprecated: Use Sensitivity.ProtoReflect.Descriptor instead.
+func (*Sensitivity) Descriptor() ([]byte, []int) {
+	return file_calandria_v1_train_proto_rawDescGZIP(), []int{8}
+}
+
+func (x *Sensitivity) GetOf() string {
+	if x != nil {
+		return x.Of
+	}
+	return ""
+}
+
+func (x *Sensitivity) GetBy() string {
+	if x != nil {
+		return x.By
+	}
+	return ""
+}
+
+func (x *Sensitivity) GetValue() float64 {
+	if x != nil {
+		return x.Value
+	}
+	return 0
+}
+
+func (x *Sensitivity) GetRelative() float64 {
+	if x != nil && x.Relative != nil {
+		return *x.Relative
+	}
+	return 0
+}
+
+// EffectCheck is what a request for SolveEffect amounts to.
+type EffectCheck struct {
+	state protoimpl.MessageState `protogen:"open.v1"`
+	// Whether the numbers given are as many as the question needs, and agree.
+	Determined bool `protobuf:"varint,1,opt,name=determined,proto3" json:"determined,omitempty"`
+	// Paths of what would be solved for.
+	Unknowns []string `protobuf:"bytes,2,rep,name=unknowns,proto3" json:"unknowns,omitempty"`
+	// Numbers that take their default.
+	DefaultsApplied []*DefaultApplied `protobuf:"bytes,3,rep,name=defaults_applied,json=defaultsApplied,proto3" json:"defaults_applied,omitempty"`
+	// Given fields that fix the same thing twice: with any one of them dropped the
+	// rest agree. Empty if there is no such conflict.
+	Conflict []string `protobuf:"bytes,4,rep,name=conflict,proto3" json:"conflict,omitempty"`
+	// How many more numbers are needed.
+	Missing int32 `protobuf:"varint,5,opt,name=missing,proto3" json:"missing,omitempty"`
+	// Fields of which any one would close the gap, or one of the gaps.
+	Closers []string `protobuf:"bytes,6,rep,name=closers,proto3" json:"closers,omitempty"`
+	// Version of the engine that looked.
+	EngineVersion string `protobuf:"bytes,7,opt,name=engine_version,json=engineVersion,proto3" json:"engine_version,omitempty"`
+	unknownFields protoimpl.UnknownFields
+	sizeCache     protoimpl.SizeCache
+}
+
+func (x *EffectCheck) Reset() {
+	*x = EffectCheck{}
+	mi := &file_calandria_v1_train_proto_msgTypes[9]
+	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+	ms.StoreMessageInfo(mi)
+}
+
+func (x *EffectCheck) String() string {
+	return protoimpl.X.MessageStringOf(x)
+}
+
+func (*EffectCheck) ProtoMessage() {}
+
+func (x *EffectCheck) ProtoReflect() protoreflect.Message {
+	mi := &file_calandria_v1_train_proto_msgTypes[9]
+	if x != nil {
+		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+		if ms.LoadMessageInfo() == nil {
+			ms.StoreMessageInfo(mi)
+		}
+		return ms
+	}
+	return mi.MessageOf(x)
+}
+
+// Deprecated: Use EffectCheck.ProtoReflect.Descriptor instead.
+func (*EffectCheck) Descriptor() ([]byte, []int) {
+	return file_calandria_v1_train_proto_rawDescGZIP(), []int{9}
+}
+
+func (x *EffectCheck) GetDetermined() bool {
+	if x != nil {
+		return x.Determined
+	}
+	return false
+}
+
+func (x *EffectCheck) GetUnknowns() []string {
+	if x != nil {
+		return x.Unknowns
+	}
+	return nil
+}
+
+func (x *EffectCheck) GetDefaultsApplied() []*DefaultApplied {
+	if x != nil {
+		return x.DefaultsApplied
+	}
+	return nil
+}
+
+func (x *EffectCheck) GetConflict() []string {
+	if x != nil {
+		return x.Conflict
+	}
+	return nil
+}
+
+func (x *EffectCheck) GetMissing() int32 {
+	if x != nil {
+		return x.Missing
+	}
+	return 0
+}
+
+func (x *EffectCheck) GetClosers() []string {
+	if x != nil {
+		return x.Closers
+	}
+	return nil
+}
+
+func (x *EffectCheck) GetEngineVersion() string {
+	if x != nil {
+		return x.EngineVersion
+	}
+	return ""
+}
+
 var File_calandria_v1_train_proto protoreflect.FileDescriptor
 
 const file_calandria_v1_train_proto_rawDesc = "" +
 	"\n" +
-	"\x18calandria/v1/train.proto\x12\fcalandria.v1\x1a\x1bbuf/validate/validate.proto\x1a\x19calandria/v1/liquor.proto\x1a\x1dcalandria/v1/provenance.proto\x1a\x1cgoogle/api/annotations.proto\"\xaf\x05\n" +
+	"\x18calandria/v1/train.proto\x12\fcalandria.v1\x1a\x1bbuf/validate/validate.proto\x1a\x19calandria/v1/liquor.proto\x1a\x1dcalandria/v1/provenance.proto\x1a\x1cgoogle/api/annotations.proto\"\xcd\x06\n" +
 	"\x12SolveEffectRequest\x12G\n" +
 	"\rcustom_liquor\x18\x02 \x01(\v2\x1a.calandria.v1.CustomLiquorB\x06\xbaH\x03\xc8\x01\x01R\fcustomLiquor\x12(\n" +
 	"\x04feed\x18\x03 \x01(\v2\x14.calandria.v1.StreamR\x04feed\x12.\n" +
@@ -968,10 +1173,15 @@ const file_calandria_v1_train_proto_rawDesc = "" +
 	"\x06effect\x18\x06 \x01(\v2\x14.calandria.v1.EffectR\x06effect\x12O\n" +
 	"\x14evaporation_kg_per_h\x18\a \x01(\x01B\x19\xbaH\x16\x12\x14@\x01\x19\x00\x00\x00\x00e\xcd\xcdA)\x00\x00\x00\x00\x00\x00\x00\x00H\x00R\x11evaporationKgPerH\x88\x01\x01\x128\n" +
 	"\aeconomy\x18\b \x01(\x01B\x19\xbaH\x16\x12\x14@\x01\x19\x00\x00\x00\x00\x00@\x8f@!\x00\x00\x00\x00\x00\x00\x00\x00H\x01R\aeconomy\x88\x01\x01\x12\xe8\x01\n" +
-	"\x04find\x18\t \x03(\tB\xd3\x01\xbaH\xcf\x01\x92\x01\xcb\x01\x10\a\x18\x01\"\xc4\x01r\xc1\x01R\x11steam.superheat_kR\x16steam.dryness_fractionR\x19effect.heat_loss_fractionR\x14effect.vent_fractionR%effect.gas_side_resistance_m2_k_per_wR\x1ceffect.entrainment_kg_per_kgR\x1eeffect.condensate_subcooling_kR\x04findB\x17\n" +
+	"\x04find\x18\t \x03(\tB\xd3\x01\xbaH\xcf\x01\x92\x01\xcb\x01\x10\a\x18\x01\"\xc4\x01r\xc1\x01R\x11steam.superheat_kR\x16steam.dryness_fractionR\x19effect.heat_loss_fractionR\x14effect.vent_fractionR%effect.gas_side_resistance_m2_k_per_wR\x1ceffect.entrainment_kg_per_kgR\x1eeffect.condensate_subcooling_kR\x04find\x12;\n" +
+	"\x10sensitivities_of\x18\n" +
+	" \x03(\tB\x10\xbaH\r\x92\x01\n" +
+	"\x10\x14\x18\x01\"\x04r\x02\x18<R\x0fsensitivitiesOf\x12D\n" +
+	"\x16require_engine_version\x18\v \x01(\tB\t\xbaH\x06r\x04\x10\x01\x18(H\x02R\x14requireEngineVersion\x88\x01\x01B\x17\n" +
 	"\x15_evaporation_kg_per_hB\n" +
 	"\n" +
-	"\b_economy\"\x91\x02\n" +
+	"\b_economyB\x19\n" +
+	"\x17_require_engine_version\"\x91\x02\n" +
 	"\x06Stream\x12A\n" +
 	"\rflow_kg_per_h\x18\x01 \x01(\x01B\x19\xbaH\x16\x12\x14@\x01\x19\x00\x00\x00\x00e\xcd\xcdA!\x00\x00\x00\x00\x00\x00\x00\x00H\x00R\n" +
 	"flowKgPerH\x88\x01\x01\x12G\n" +
@@ -1060,7 +1270,7 @@ const file_calandria_v1_train_proto_rawDesc = "" +
 	"\x06energy\x18\x03 \x01(\x01R\x06energy\"<\n" +
 	"\x0eDefaultApplied\x12\x14\n" +
 	"\x05field\x18\x01 \x01(\tR\x05field\x12\x14\n" +
-	"\x05value\x18\x02 \x01(\x01R\x05value\"\x81\x05\n" +
+	"\x05value\x18\x02 \x01(\x01R\x05value\"\xc2\x05\n" +
 	"\x0eEffectSolution\x12(\n" +
 	"\x04feed\x18\x01 \x01(\v2\x14.calandria.v1.StreamR\x04feed\x12.\n" +
 	"\aproduct\x18\x02 \x01(\v2\x14.calandria.v1.StreamR\aproduct\x12-\n" +
@@ -1077,10 +1287,28 @@ const file_calandria_v1_train_proto_rawDesc = "" +
 	"advisories\x128\n" +
 	"\n" +
 	"provenance\x18\v \x01(\v2\x18.calandria.v1.ProvenanceR\n" +
-	"provenanceB'\n" +
-	"%_specific_steam_consumption_kg_per_kg2\x91\x01\n" +
+	"provenance\x12?\n" +
+	"\rsensitivities\x18\f \x03(\v2\x19.calandria.v1.SensitivityR\rsensitivitiesB'\n" +
+	"%_specific_steam_consumption_kg_per_kg\"q\n" +
+	"\vSensitivity\x12\x0e\n" +
+	"\x02of\x18\x01 \x01(\tR\x02of\x12\x0e\n" +
+	"\x02by\x18\x02 \x01(\tR\x02by\x12\x14\n" +
+	"\x05value\x18\x03 \x01(\x01R\x05value\x12\x1f\n" +
+	"\brelative\x18\x04 \x01(\x01H\x00R\brelative\x88\x01\x01B\v\n" +
+	"\t_relative\"\x89\x02\n" +
+	"\vEffectCheck\x12\x1e\n" +
+	"\n" +
+	"determined\x18\x01 \x01(\bR\n" +
+	"determined\x12\x1a\n" +
+	"\bunknowns\x18\x02 \x03(\tR\bunknowns\x12G\n" +
+	"\x10defaults_applied\x18\x03 \x03(\v2\x1c.calandria.v1.DefaultAppliedR\x0fdefaultsApplied\x12\x1a\n" +
+	"\bconflict\x18\x04 \x03(\tR\bconflict\x12\x18\n" +
+	"\amissing\x18\x05 \x01(\x05R\amissing\x12\x18\n" +
+	"\aclosers\x18\x06 \x03(\tR\aclosers\x12%\n" +
+	"\x0eengine_version\x18\a \x01(\tR\rengineVersion2\x90\x02\n" +
 	"\fTrainService\x12\x80\x01\n" +
-	"\vSolveEffect\x12 .calandria.v1.SolveEffectRequest\x1a\x1c.calandria.v1.EffectSolution\"1\x82\xd3\xe4\x93\x02+:\x01*Z\x13\x12\x11/v1/effects:solve\"\x11/v1/effects:solveB<Z:calandria.example/calandria/proto/calandria/v1;calandriav1b\x06proto3"
+	"\vSolveEffect\x12 .calandria.v1.SolveEffectRequest\x1a\x1c.calandria.v1.EffectSolution\"1\x82\xd3\xe4\x93\x02+:\x01*Z\x13\x12\x11/v1/effects:solve\"\x11/v1/effects:solve\x12}\n" +
+	"\vCheckEffect\x12 .calandria.v1.SolveEffectRequest\x1a\x19.calandria.v1.EffectCheck\"1\x82\xd3\xe4\x93\x02+:\x01*Z\x13\x12\x11/v1/effects:check\"\x11/v1/effects:checkB<Z:calandria.example/calandria/proto/calandria/v1;calandriav1b\x06proto3"
 
 var (
 	file_calandria_v1_train_proto_rawDescOnce sync.Once
@@ -1094,7 +1322,7 @@ func file_calandria_v1_train_proto_rawDescGZIP() []byte {
 	return file_calandria_v1_train_proto_rawDescData
 }
 
-var file_calandria_v1_train_proto_msgTypes = make([]protoimpl.MessageInfo, 8)
+var file_calandria_v1_train_proto_msgTypes = make([]protoimpl.MessageInfo, 10)
 var file_calandria_v1_train_proto_goTypes = []any{
 	(*SolveEffectRequest)(nil), // 0: calandria.v1.SolveEffectRequest
 	(*Stream)(nil),             // 1: calandria.v1.Stream
@@ -1104,12 +1332,14 @@ var file_calandria_v1_train_proto_goTypes = []any{
 	(*Closure)(nil),            // 5: calandria.v1.Closure
 	(*DefaultApplied)(nil),     // 6: calandria.v1.DefaultApplied
 	(*EffectSolution)(nil),     // 7: calandria.v1.EffectSolution
-	(*CustomLiquor)(nil),       // 8: calandria.v1.CustomLiquor
-	(*Advisory)(nil),           // 9: calandria.v1.Advisory
-	(*Provenance)(nil),         // 10: calandria.v1.Provenance
+	(*Sensitivity)(nil),        // 8: calandria.v1.Sensitivity
+	(*EffectCheck)(nil),        // 9: calandria.v1.EffectCheck
+	(*CustomLiquor)(nil),       // 10: calandria.v1.CustomLiquor
+	(*Advisory)(nil),           // 11: calandria.v1.Advisory
+	(*Provenance)(nil),         // 12: calandria.v1.Provenance
 }
 var file_calandria_v1_train_proto_depIdxs = []int32{
-	8,  // 0: calandria.v1.SolveEffectRequest.custom_liquor:type_name -> calandria.v1.CustomLiquor
+	10, // 0: calandria.v1.SolveEffectRequest.custom_liquor:type_name -> calandria.v1.CustomLiquor
 	1,  // 1: calandria.v1.SolveEffectRequest.feed:type_name -> calandria.v1.Stream
 	1,  // 2: calandria.v1.SolveEffectRequest.product:type_name -> calandria.v1.Stream
 	2,  // 3: calandria.v1.SolveEffectRequest.steam:type_name -> calandria.v1.LiveSteam
@@ -1120,15 +1350,19 @@ var file_calandria_v1_train_proto_depIdxs = []int32{
 	4,  // 8: calandria.v1.EffectSolution.effect:type_name -> calandria.v1.SolvedEffect
 	5,  // 9: calandria.v1.EffectSolution.closure:type_name -> calandria.v1.Closure
 	6,  // 10: calandria.v1.EffectSolution.defaults_applied:type_name -> calandria.v1.DefaultApplied
-	9,  // 11: calandria.v1.EffectSolution.advisories:type_name -> calandria.v1.Advisory
-	10, // 12: calandria.v1.EffectSolution.provenance:type_name -> calandria.v1.Provenance
-	0,  // 13: calandria.v1.TrainService.SolveEffect:input_type -> calandria.v1.SolveEffectRequest
-	7,  // 14: calandria.v1.TrainService.SolveEffect:output_type -> calandria.v1.EffectSolution
-	14, // [14:15] is the sub-list for method output_type
-	13, // [13:14] is the sub-list for method input_type
-	13, // [13:13] is the sub-list for extension type_name
-	13, // [13:13] is the sub-list for extension extendee
-	0,  // [0:13] is the sub-list for field type_name
+	11, // 11: calandria.v1.EffectSolution.advisories:type_name -> calandria.v1.Advisory
+	12, // 12: calandria.v1.EffectSolution.provenance:type_name -> calandria.v1.Provenance
+	8,  // 13: calandria.v1.EffectSolution.sensitivities:type_name -> calandria.v1.Sensitivity
+	6,  // 14: calandria.v1.EffectCheck.defaults_applied:type_name -> calandria.v1.DefaultApplied
+	0,  // 15: calandria.v1.TrainService.SolveEffect:input_type -> calandria.v1.SolveEffectRequest
+	0,  // 16: calandria.v1.TrainService.CheckEffect:input_type -> calandria.v1.SolveEffectRequest
+	7,  // 17: calandria.v1.TrainService.SolveEffect:output_type -> calandria.v1.EffectSolution
+	9,  // 18: calandria.v1.TrainService.CheckEffect:output_type -> calandria.v1.EffectCheck
+	17, // [17:19] is the sub-list for method output_type
+	15, // [15:17] is the sub-list for method input_type
+	15, // [15:15] is the sub-list for extension type_name
+	15, // [15:15] is the sub-list for extension extendee
+	0,  // [0:15] is the sub-list for field type_name
 }
 
 func init() { file_calandria_v1_train_proto_init() }
@@ -1143,13 +1377,14 @@ func file_calandria_v1_train_proto_init() {
 	file_calandria_v1_train_proto_msgTypes[2].OneofWrappers = []any{}
 	file_calandria_v1_train_proto_msgTypes[3].OneofWrappers = []any{}
 	file_calandria_v1_train_proto_msgTypes[7].OneofWrappers = []any{}
+	file_calandria_v1_train_proto_msgTypes[8].OneofWrappers = []any{}
 	type x struct{}
 	out := protoimpl.TypeBuilder{
 		File: protoimpl.DescBuilder{
 			GoPackagePath: reflect.TypeOf(x{}).PkgPath(),
 			RawDescriptor: unsafe.Slice(unsafe.StringData(file_calandria_v1_train_proto_rawDesc), len(file_calandria_v1_train_proto_rawDesc)),
 			NumEnums:      0,
-			NumMessages:   8,
+			NumMessages:   10,
 			NumExtensions: 0,
 			NumServices:   1,
 		},

@@ -20,6 +20,7 @@ const _ = grpc.SupportPackageIsVersion9
 
 const (
 	TrainService_SolveEffect_FullMethodName = "/calandria.v1.TrainService/SolveEffect"
+	TrainService_CheckEffect_FullMethodName = "/calandria.v1.TrainService/CheckEffect"
 )
 
 // TrainServiceClient is the client API for TrainService service.
@@ -29,7 +30,13 @@ const (
 // TrainService balances, sizes and rates evaporators.
 type TrainServiceClient interface {
 	// SolveEffect solves one effect for whatever the request leaves out.
+	// buf:lint:ignore RPC_REQUEST_RESPONSE_UNIQUE
 	SolveEffect(ctx context.Context, in *SolveEffectRequest, opts ...grpc.CallOption) (*EffectSolution, error)
+	// CheckEffect tells of a request for SolveEffect what it would solve for, which
+	// numbers are too many and which would close a gap. It solves nothing.
+	// buf:lint:ignore RPC_REQUEST_RESPONSE_UNIQUE
+	// buf:lint:ignore RPC_REQUEST_STANDARD_NAME
+	CheckEffect(ctx context.Context, in *SolveEffectRequest, opts ...grpc.CallOption) (*EffectCheck, error)
 }
 
 type trainServiceClient struct {
@@ -50,6 +57,16 @@ func (c *trainServiceClient) SolveEffect(ctx context.Context, in *SolveEffectReq
 	return out, nil
 }
 
+func (c *trainServiceClient) CheckEffect(ctx context.Context, in *SolveEffectRequest, opts ...grpc.CallOption) (*EffectCheck, error) {
+	cOpts := append([]grpc.CallOption{grpc.StaticMethod()}, opts...)
+	out := new(EffectCheck)
+	err := c.cc.Invoke(ctx, TrainService_CheckEffect_FullMethodName, in, out, cOpts...)
+	if err != nil {
+		return nil, err
+	}
+	return out, nil
+}
+
 // TrainServiceServer is the server API for TrainService service.
 // All implementations must embed UnimplementedTrainServiceServer
 // for forward compatibility.
@@ -57,7 +74,13 @@ func (c *trainServiceClient) SolveEffect(ctx context.Context, in *SolveEffectReq
 // TrainService balances, sizes and rates evaporators.
 type TrainServiceServer interface {
 	// SolveEffect solves one effect for whatever the request leaves out.
+	// buf:lint:ignore RPC_REQUEST_RESPONSE_UNIQUE
 	SolveEffect(context.Context, *SolveEffectRequest) (*EffectSolution, error)
+	// CheckEffect tells of a request for SolveEffect what it would solve for, which
+	// numbers are too many and which would close a gap. It solves nothing.
+	// buf:lint:ignore RPC_REQUEST_RESPONSE_UNIQUE
+	// buf:lint:ignore RPC_REQUEST_STANDARD_NAME
+	CheckEffect(context.Context, *SolveEffectRequest) (*EffectCheck, error)
 	mustEmbedUnimplementedTrainServiceServer()
 }
 
@@ -70,6 +93,9 @@ type UnimplementedTrainServiceServer struct{}
 
 func (UnimplementedTrainServiceServer) SolveEffect(context.Context, *SolveEffectRequest) (*EffectSolution, error) {
 	return nil, status.Error(codes.Unimplemented, "method SolveEffect not implemented")
+}
+func (UnimplementedTrainServiceServer) CheckEffect(context.Context, *SolveEffectRequest) (*EffectCheck, error) {
+	return nil, status.Error(codes.Unimplemented, "method CheckEffect not implemented")
 }
 func (UnimplementedTrainServiceServer) mustEmbedUnimplementedTrainServiceServer() {}
 func (UnimplementedTrainServiceServer) testEmbeddedByValue()                      {}
@@ -110,6 +136,24 @@ func _TrainService_SolveEffect_Handler(srv interface{}, ctx context.Context, dec
 	return interceptor(ctx, in, info, handler)
 }
 
+func _TrainService_CheckEffect_Handler(srv interface{}, ctx context.Context, dec func(interface{}) error, interceptor grpc.UnaryServerInterceptor) (interface{}, error) {
+	in := new(SolveEffectRequest)
+	if err := dec(in); err != nil {
+		return nil, err
+	}
+	if interceptor == nil {
+		return srv.(TrainServiceServer).CheckEffect(ctx, in)
+	}
+	info := &grpc.UnaryServerInfo{
+		Server:     srv,
+		FullMethod: TrainService_CheckEffect_FullMethodName,
+	}
+	handler := func(ctx context.Context, req interface{}) (interface{}, error) {
+		return srv.(TrainServiceServer).CheckEffect(ctx, req.(*SolveEffectRequest))
+	}
+	return interceptor(ctx, in, info, handler)
+}
+
 // TrainService_ServiceDesc is the grpc.ServiceDesc for TrainService service.
 // It's only intended for direct use with grpc.RegisterService,
 // and not to be introspected or modified (even as a copy)
@@ -120,6 +164,10 @@ var TrainService_ServiceDesc = grpc.ServiceDesc{
 		{
 			MethodName: "SolveEffect",
 			Handler:    _TrainService_SolveEffect_Handler,
+		},
+		{
+			MethodName: "CheckEffect",
+			Handler:    _TrainService_CheckEffect_Handler,
 		},
 	},
 	Streams:  []grpc.StreamDesc{},

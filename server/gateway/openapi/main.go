@@ -144,7 +144,7 @@ func (w *writer) method(service protoreflect.ServiceDescriptor, m protoreflect.M
 		}
 		answers := object{"application/json": object{"schema": ref(string(m.Output().Name()))}}
 		responses := object{"200": object{"description": "The answer.", "content": answers}}
-		for _, status := range []string{"400", "404", "405", "422", "500", "503", "504"} {
+		for _, status := range []string{"400", "404", "405", "412", "422", "500", "503", "504"} {
 			responses[status] = object{"$ref": "#/components/responses/Problem"}
 		}
 		operation["responses"] = responses
