@@ -21,6 +21,8 @@ type Custom struct {
 
 	SpecificHeat  []float64     // J/(kg K), coefficients of rising powers of the solids fraction
 	EnthalpyTable []EnthalpyRow // in rising order of solids
+
+	Density []float64 // kg/m3, coefficients of rising powers of the solids fraction; none if not known
 }
 
 // DuhringLine is t_liquor = Intercept + Slope t_water, both in degC, for one
@@ -74,6 +76,10 @@ func New(c Custom) (*Liquor, error) {
 		l.heat = newEnthalpyTable(c.EnthalpyTable, complain)
 	default:
 		complain("custom_liquor", "without heat", "one of specific_heat_kj_per_kg_k, specific_heat_polynomial, enthalpy_table", "give at least a specific heat")
+	}
+	if len(c.Density) > 0 {
+		checkFinite(c.Density, "custom_liquor.density_polynomial.coefficients_kg_per_m3", complain)
+		l.density = trimmed(c.Density)
 	}
 	if len(problems) > 0 {
 		return nil, errors.Join(problems...)

@@ -26,6 +26,19 @@ func (q *question) answer(v *state) (*Answer, error) {
 		Entrained:             v[VapourFlow] * v[Entrainment],
 	}
 	copy(a.Value[:], v[:numbers])
+	switch {
+	case v[Circulation] > 0:
+		_, _, cp := q.liquor.Enthalpy(v[SolidsOut], v[BoilingTemperature])
+		a.Circulation, a.LiquorHeating = v[Circulation], v[Duty]/(v[Circulation]*cp)
+	case v[LiquorLevel] > 0:
+		a.LiquorLevel, a.StaticHead = v[LiquorLevel], v[ChestTemperature]-v[BoilingTemperature]-v[drivingForce]
+	}
+	if rho, _, _, ok := q.liquor.Density(v[FeedSolids], v[FeedTemperature]); ok {
+		a.FeedVolume = v[FeedFlow] / rho
+	}
+	if rho, _, _, ok := q.liquor.Density(v[SolidsOut], v[BoilingTemperature]); ok {
+		a.ProductVolume = v[ProductFlow] / rho
+	}
 	for n := range numbers {
 		if q.byDefault[n] {
 			a.Defaults = append(a.Defaults, Given{n, v[n]})
@@ -63,6 +76,11 @@ func (q *question) check(v *state, a *Answer) error {
 		}
 	}
 	a.Advisories = append(a.Advisories, q.liquor.CheckRise(v[SolidsOut])...)
+	for _, w := range [...]float64{v[FeedSolids], v[SolidsOut]} {
+		if err := q.liquor.CheckDensity(w); err != nil {
+			return err
+		}
+	}
 	feed, err := q.liquor.CheckEnthalpy(v[FeedSolids], v[FeedTemperature])
 	if err != nil {
 		return err

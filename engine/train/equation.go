@@ -3,6 +3,7 @@ package train
 import (
 	"math"
 
+	"calandria.example/calandria/engine/fault"
 	"calandria.example/calandria/engine/liquor"
 	"calandria.example/calandria/engine/quantity"
 	"calandria.example/calandria/engine/steam"
@@ -26,6 +27,8 @@ const (
 	productTemperature
 	evaporationSum
 	economyDefinition
+	feedVolume
+	productVolume
 	relations
 )
 
@@ -44,6 +47,8 @@ var relationNames = [relations]string{
 	productTemperature:    "temperature of the product",
 	evaporationSum:        "evaporation",
 	economyDefinition:     "economy",
+	feedVolume:            "volume flow of the feed",
+	productVolume:         "volume flow of the product",
 }
 
 // equation is a relation with the numbers that stand in it.
@@ -69,21 +74,55 @@ var standIn = [relations][]Number{
 	productTemperature:    {ProductTemperature, BoilingTemperature},
 	evaporationSum:        {Evaporation, VapourFlow},
 	economyDefinition:     {Economy, VapourFlow, SteamFlow},
+	feedVolume:            {FeedVolumeFlow, FeedFlow, FeedTemperature, FeedSolids},
+	productVolume:         {ProductVolumeFlow, ProductFlow, BoilingTemperature, SolidsOut},
 }
 
-// equationsOf returns the equations of a plant that concentrates l. A number
-// stands in an equation only where it can change it, so that the structure of
-// a question tells the truth.
-func equationsOf(l *liquor.Liquor) []equation {
-	list := make([]equation, relations)
+// parts are what a plant has only if the question gives a number of it.
+type parts struct{ feedVolume, productVolume, level, circulation bool }
+
+// driving lists the numbers that stand in the driving force of a plant with
+// parts.
+func (p parts) driving() []Number {
+	switch {
+	case p.circulation:
+		return []Number{drivingForce, ChestTemperature, BoilingTemperature, Duty, Circulation, SolidsOut}
+	case p.level:
+		return []Number{drivingForce, ChestTemperature, BoilingTemperature, VapourSaturationTemperature, LiquorLevel, SolidsOut}
+	}
+	return standIn[temperatureDifference]
+}
+
+// equationsOf returns the equations of a plant with parts that concentrates l.
+// A number stands in an equation only where it can change it, so that the
+// structure of a question tells the truth.
+func equationsOf(l *liquor.Liquor, p parts) []equation {
+	list := make([]equation, 0, relations)
 	for r := range relations {
-		list[r] = equation{r, standIn[r]}
-	}
-	if !l.RiseDependsOnSolids() {
-		list[boilingEquilibrium].in = standIn[boilingEquilibrium][:2]
-	}
-	if !l.EnthalpyDependsOnSolids() {
-		list[energyBalance].in = standIn[energyBalance][:7]
+		in := standIn[r]
+		switch {
+		case r == boilingEquilibrium && !l.RiseDependsOnSolids():
+			in = in[:2]
+		case r == energyBalance && !l.EnthalpyDependsOnSolids():
+			in = in[:7]
+		case r == temperatureDifference:
+			in = p.driving()
+			depends := l.RiseDependsOnSolids() || l.DensityDependsOnSolids()
+			if p.circulation {
+				depends = l.EnthalpyDependsOnSolids()
+			}
+			if len(in) > len(standIn[r]) && !depends {
+				in = in[:len(in)-1]
+			}
+		case r == feedVolume || r == productVolume:
+			if r == feedVolume && !p.feedVolume || r == productVolume && !p.productVolume {
+				continue
+			}
+			if !l.DensityDependsOnSolids() {
+				in = in[:3]
+			}
+		}
+		list = append(list, equation{r, in})
 	}
 	return list
 }
@@ -153,8 +192,13 @@ func residual(r relation, l *liquor.Liquor, v *state, d *gradient) (miss, size f
 		return v[ChestTemperature] - v[SteamTemperature], temperatureSize, nil
 
 	case temperatureDifference:
-		d[drivingForce], d[ChestTemperature], d[BoilingTemperature] = 1, -1, 1
-		return v[drivingForce] - v[ChestTemperature] + v[BoilingTemperature], temperatureSize, nil
+		return drivingResidual(l, v, d)
+
+	case feedVolume:
+		return volumeResidual(l, FeedFlow, FeedVolumeFlow, FeedSolids, FeedTemperature, v, d)
+
+	case productVolume:
+		return volumeResidual(l, ProductFlow, ProductVolumeFlow, SolidsOut, BoilingTemperature, v, d)
 
 	case productSolids:
 		d[ProductSolids], d[SolidsOut] = 1, -1
@@ -218,6 +262,116 @@ func chestResidual(v *state, d *gradient) (miss, size float64, err error) {
 	d[Dryness] = condensing * by.dryness
 	d[ChestTemperature], d[Subcooling] = -condensing*hcByT, condensing*hcByT
 	return q - v[Duty], math.Abs(q) + math.Abs(v[Duty]), nil
+}
+
+// volumeResidual: F = rho V.
+func volumeResidual(l *liquor.Liquor, mass, volume, solids, t Number, v *state, d *gradient) (miss, size float64, err error) {
+	rho, byW, byT, _ := l.Density(v[solids], v[t])
+	d[mass], d[volume] = 1, -rho
+	d[solids], d[t] = -byW*v[volume], -byT*v[volume]
+	return v[mass] - rho*v[volume], math.Abs(v[mass]) + math.Abs(rho*v[volume]), nil
+}
+
+// drivingResidual: what is left of the difference between chest and boiling
+// liquor after the static head, or its logarithmic mean over the heating of
+// liquor that is pumped around.
+func drivingResidual(l *liquor.Liquor, v *state, d *gradient) (miss, size float64, err error) {
+	d[drivingForce] = 1
+	if v[Circulation] > 0 {
+		mean, by, err := logarithmicMean(l, v)
+		if err != nil {
+			return 0, 0, err
+		}
+		d[ChestTemperature], d[BoilingTemperature] = -by.chest, -by.boiling
+		d[Duty], d[Circulation], d[SolidsOut] = -by.duty, -by.circulation, -by.solids
+		return v[drivingForce] - mean, temperatureSize, nil
+	}
+	d[ChestTemperature], d[BoilingTemperature] = -1, 1
+	miss = v[drivingForce] - v[ChestTemperature] + v[BoilingTemperature]
+	if level := v[LiquorLevel]; level != 0 && !math.IsNaN(level) {
+		head, by, err := staticHead(l, v)
+		if err != nil {
+			return 0, 0, err
+		}
+		d[BoilingTemperature] += by.boiling
+		d[VapourSaturationTemperature], d[LiquorLevel], d[SolidsOut] = by.water, by.level, by.solids
+		miss += head
+	}
+	return miss, temperatureSize, nil
+}
+
+// standardGravity in m/s2.
+const standardGravity = 9.80665
+
+type headSlopes struct{ boiling, water, level, solids float64 }
+
+// staticHead is by how much hotter, in K, liquor boils at half the level than at
+// the surface, with the density of clear liquor.
+func staticHead(l *liquor.Liquor, v *state) (head float64, by headSlopes, err error) {
+	tw, w := v[VapourSaturationTemperature], v[SolidsOut]
+	p, slope, err := steam.SaturationSlope(quantity.Temperature(tw))
+	if err != nil {
+		return 0, by, err
+	}
+	rho, rhoByW, rhoByT, _ := l.Density(w, v[BoilingTemperature])
+	half := standardGravity * v[LiquorLevel] / 2
+	below, err := steam.SaturationTemperature(p + quantity.Pressure(rho*half))
+	if err != nil {
+		return 0, by, err
+	}
+	_, slopeBelow, err := steam.SaturationSlope(below)
+	if err != nil {
+		return 0, by, err
+	}
+	rise, riseByW, riseByTw := l.Rise(w, tw)
+	riseBelow, belowByW, belowByTw := l.Rise(w, float64(below))
+	// Everything below moves with the boiling temperature of water there.
+	move := (1 + belowByTw) / slopeBelow // K/Pa
+	by.water = move*slope - 1 - riseByTw
+	by.level = move * rho * standardGravity / 2
+	by.solids = move*rhoByW*half + belowByW - riseByW
+	by.boiling = move * rhoByT * half
+	return float64(below) + riseBelow - tw - rise, by, nil
+}
+
+type meanSlopes struct{ chest, boiling, duty, circulation, solids float64 }
+
+// logarithmicMean is the mean difference in K between chest and liquor that is
+// heated, all of it together, from its boiling temperature by the duty.
+func logarithmicMean(l *liquor.Liquor, v *state) (mean float64, by meanSlopes, err error) {
+	w, t := v[SolidsOut], v[BoilingTemperature]
+	_, _, cp := l.Enthalpy(w, t)
+	heating := v[Duty] / (v[Circulation] * cp)
+	cold := v[ChestTemperature] - t // the difference where the liquor enters
+	hot := cold - heating           // and where it leaves
+	if !(cold > 0 && hot > 0) {
+		return 0, by, &fault.Range{Quantity: "heating of the circulating liquor", Unit: "K difference", Source: "circulation", Value: heating, Min: 0, Max: cold}
+	}
+	byCold, byHot := 0.5, 0.5
+	mean = (cold + hot) / 2
+	const alike = 1e-4 // relative difference below which the series is exact to rounding
+	if gap := heating / mean; gap < alike {
+		mean -= heating * gap / 12
+		byCold, byHot = 0.5-gap/6, 0.5+gap/6
+	} else {
+		logarithm := math.Log(cold / hot)
+		mean = heating / logarithm
+		byCold = (1 - mean/cold) / logarithm
+		byHot = (mean/hot - 1) / logarithm
+	}
+	// cp moves with solids and temperature; its own slopes by differences.
+	const dw, dt = 1e-5, 1e-2
+	_, _, stronger := l.Enthalpy(w+dw, t)
+	_, _, weaker := l.Enthalpy(w-dw, t)
+	_, _, hotter := l.Enthalpy(w, t+dt)
+	_, _, colder := l.Enthalpy(w, t-dt)
+	byHeating := -byHot
+	by.chest = byCold + byHot
+	by.duty = byHeating * heating / v[Duty]
+	by.circulation = -byHeating * heating / v[Circulation]
+	by.solids = -byHeating * heating / cp * (stronger - weaker) / (2 * dw)
+	by.boiling = -by.chest - byHeating*heating/cp*(hotter-colder)/(2*dt)
+	return mean, by, nil
 }
 
 // saturationResidual: ln p = ln psat(t), which is nearly straight in 1/t.

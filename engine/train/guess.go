@@ -98,6 +98,13 @@ func (s *search) guess(b *block, attempt int, v *state) {
 		}
 	}
 
+	// Volumes tell their masses.
+	for _, pair := range [...][4]Number{{FeedFlow, FeedVolumeFlow, FeedSolids, FeedTemperature}, {ProductFlow, ProductVolumeFlow, SolidsOut, BoilingTemperature}} {
+		if rho, _, _, ok := s.question.liquor.Density(w[pair[2]], w[pair[3]]); ok {
+			set(pair[0], w[pair[1]]*rho)
+		}
+	}
+
 	// Flows: whichever is known sets the size of the others.
 	tie(Evaporation, VapourFlow)
 	ratio := 1 - w[FeedSolids]/math.Max(w[SolidsOut], 1e-6)
@@ -140,6 +147,7 @@ func (s *search) guess(b *block, attempt int, v *state) {
 	set(Vent, 0.02)
 	set(Entrainment, 0.01)
 	set(GasSideResistance, 1e-5)
+	set(LiquorLevel, 1)
 
 	for _, n := range b.numbers {
 		v[n] = w[n]

@@ -17,10 +17,15 @@ import (
 // differences at random states, for every kind of liquor.
 func TestDerivatives(t *testing.T) {
 	r := rand.New(rand.NewPCG(3, 4))
-	for k, l := range liquors(t) {
-		for range 50 {
+	for k, l := range append(liquors(t), dense(t)...) {
+		for i := range 60 {
 			v := chosen(t, r, l, true)
-			for _, e := range equationsOf(l) {
+			has := parts{}
+			if i%3 > 0 && l.HasDensity() {
+				has = parts{feedVolume: true, productVolume: true, level: i%3 == 1, circulation: i%3 == 2}
+				furnish(r, l, has, &v)
+			}
+			for _, e := range equationsOf(l, has) {
 				var d, unused gradient
 				if _, _, err := residual(e.relation, l, &v, &d); err != nil {
 					t.Fatal(err)
@@ -52,9 +57,14 @@ func TestDerivatives(t *testing.T) {
 // that is not listed in an equation must not move it.
 func TestEverythingThatChangesAnEquationStandsInIt(t *testing.T) {
 	r := rand.New(rand.NewPCG(5, 6))
-	for _, l := range liquors(t) {
+	for i, l := range slices.Concat(liquors(t), dense(t), dense(t)) {
 		v := chosen(t, r, l, true)
-		for _, e := range equationsOf(l) {
+		has := parts{}
+		if l.HasDensity() {
+			has = parts{feedVolume: true, productVolume: true, level: i%2 == 0, circulation: i%2 == 1}
+			furnish(r, l, has, &v)
+		}
+		for _, e := range equationsOf(l, has) {
 			var d gradient
 			if _, _, err := residual(e.relation, l, &v, &d); err != nil {
 				t.Fatal(err)

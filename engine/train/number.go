@@ -42,7 +42,14 @@ const (
 	numbers                                   // how many there are
 
 	drivingForce = numbers // K; not to be fixed, but solved with the rest
-	unknowns     = numbers + 1
+
+	// The numbers from here on belong to parts that a plant has only if the
+	// question gives them.
+	FeedVolumeFlow    = numbers + 1 // m3/s
+	ProductVolumeFlow = numbers + 2 // m3/s
+	Circulation       = numbers + 3 // kg/s, liquor pumped through the heater
+	LiquorLevel       = numbers + 4 // m, from the bottom of the heating surface to the liquor's
+	unknowns          = numbers + 5
 )
 
 // kind groups numbers that share bounds and sizes.
@@ -56,6 +63,7 @@ const (
 	difference
 	positive
 	resistance
+	length
 )
 
 // detail is what the solver and its messages need to know of a number.
@@ -94,6 +102,10 @@ var details = [unknowns]detail{
 	Entrainment:                 {"effect.entrainment_kg_per_kg", fraction, ""},
 	Subcooling:                  {"effect.condensate_subcooling_k", difference, "K"},
 	drivingForce:                {"effect.driving_force_k", difference, "K"},
+	FeedVolumeFlow:              {"feed.volume_flow_m3_per_h", flow, "m3/s"},
+	ProductVolumeFlow:           {"product.volume_flow_m3_per_h", flow, "m3/s"},
+	Circulation:                 {"effect.circulation_kg_per_h", flow, "kg/s"},
+	LiquorLevel:                 {"effect.liquor_level_m", length, "m"},
 }
 
 // Path returns the field path of n in a request.
@@ -101,8 +113,8 @@ func (n Number) Path() string { return details[n].path }
 
 // NumberAt returns the number with a field path.
 func NumberAt(path string) (Number, bool) {
-	for n := range numbers {
-		if details[n].path == path {
+	for n := range unknowns {
+		if details[n].path == path && n != drivingForce {
 			return n, true
 		}
 	}
@@ -115,7 +127,7 @@ func defaultOf(n Number) (float64, bool) {
 	switch n {
 	case Dryness:
 		return 1, true
-	case Superheat, HeatLoss, Vent, GasSideResistance, Entrainment, Subcooling:
+	case Superheat, HeatLoss, Vent, GasSideResistance, Entrainment, Subcooling, LiquorLevel:
 		return 0, true
 	}
 	return 0, false
@@ -140,6 +152,8 @@ func bounds(n Number) (low, high float64) {
 		return coldest, hottest
 	case pressure:
 		return 500, 17e6
+	case length:
+		return 0, 100
 	default: // difference
 		return 0, 500
 	}

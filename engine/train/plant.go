@@ -46,10 +46,34 @@ type Answer struct {
 	HeatLossRate          float64 // W
 	VentFlow              float64 // kg/s
 	Entrained             float64 // kg/s
+	StaticHead            float64 // K, at half the liquor level
+	LiquorLevel           float64 // m
+	Circulation           float64 // kg/s; 0 without a pump
+	LiquorHeating         float64 // K, of the circulating liquor
+	FeedVolume            float64 // m3/s; 0 if the density is not known
+	ProductVolume         float64 // m3/s; 0 if the density is not known
 
 	Closure    Closure
 	Advisories []evidence.Advisory
 	Models     []evidence.Model
+}
+
+// At returns a number of the answer, in SI units; those of parts that the plant
+// does not have are 0.
+func (a *Answer) At(n Number) float64 {
+	switch n {
+	case drivingForce:
+		return a.DrivingForce
+	case FeedVolumeFlow:
+		return a.FeedVolume
+	case ProductVolumeFlow:
+		return a.ProductVolume
+	case Circulation:
+		return a.Circulation
+	case LiquorLevel:
+		return a.LiquorLevel
+	}
+	return a.Value[n]
 }
 
 // question is a plant with every number known to be fixed or sought.
@@ -58,11 +82,12 @@ type question struct {
 	equations []equation
 	fixed     [unknowns]bool
 	byDefault [unknowns]bool
-	value     state // NaN where not fixed
+	absent    [unknowns]bool // of a part that the plant does not have
+	value     state          // NaN where not fixed
 }
 
 func newQuestion(p Plant) (*question, error) {
-	q := &question{liquor: p.Liquor, equations: equationsOf(p.Liquor)}
+	q := &question{liquor: p.Liquor}
 	for n := range unknowns {
 		q.value[n] = math.NaN()
 	}
@@ -94,9 +119,18 @@ func newQuestion(p Plant) (*question, error) {
 	if q.fixed[Superheat] && q.value[Superheat] > 0 && q.fixed[Dryness] && q.value[Dryness] < 1 {
 		complain(Dryness, strconv.FormatFloat(q.value[Dryness], 'g', -1, 64), "1 for superheated steam", "give superheat_k or a dryness below 1, not both")
 	}
+	for _, n := range [...]Number{FeedVolumeFlow, ProductVolumeFlow, LiquorLevel} {
+		if asked := q.fixed[n] && q.value[n] != 0 || contains(p.Find, n); asked && !p.Liquor.HasDensity() {
+			complain(n, "asked for", "only for a liquor whose density is known", "give custom_liquor.density_kg_per_m3 or density_polynomial")
+		}
+	}
+	if asked := q.fixed[LiquorLevel] && q.value[LiquorLevel] > 0 || contains(p.Find, LiquorLevel); asked && q.fixed[Circulation] {
+		complain(LiquorLevel, "given beside "+Circulation.Path(), "one of the two", "drop one: liquor that is pumped around does not boil in the tubes, and its driving force has no static head")
+	}
 	if len(problems) > 0 {
 		return nil, errors.Join(problems...)
 	}
+	q.fit(p.Find)
 	for n := range numbers {
 		value, ok := defaultOf(n)
 		if !ok || q.fixed[n] || contains(p.Find, n) {
@@ -105,6 +139,22 @@ func newQuestion(p Plant) (*question, error) {
 		q.fixed[n], q.byDefault[n], q.value[n] = true, true, value
 	}
 	return q, nil
+}
+
+// fit sees which parts the plant has: a part of which the question gives no
+// number adds neither unknowns nor equations.
+func (q *question) fit(find []Number) {
+	level := q.fixed[LiquorLevel] && q.value[LiquorLevel] > 0 || contains(find, LiquorLevel)
+	has := parts{feedVolume: q.fixed[FeedVolumeFlow], productVolume: q.fixed[ProductVolumeFlow], level: level, circulation: q.fixed[Circulation]}
+	for _, part := range [...]struct {
+		number Number
+		there  bool
+	}{{FeedVolumeFlow, has.feedVolume}, {ProductVolumeFlow, has.productVolume}, {Circulation, has.circulation}, {LiquorLevel, has.level}} {
+		if n := part.number; !part.there {
+			q.fixed[n], q.absent[n], q.value[n] = true, true, math.NaN()
+		}
+	}
+	q.equations = equationsOf(q.liquor, has)
 }
 
 // doorBounds are what a question may fix a number to: the bounds of the

@@ -141,6 +141,12 @@ func impossible(v *state, q *question) error {
 
 func noDrivingForce(v *state) error {
 	short := v[BoilingTemperature] - v[ChestTemperature]
+	if short < 0 && v[drivingForce] <= 0 {
+		return &fault.Infeasible{
+			Effect: "effect", Cause: fault.NoDrivingForce, Field: drivingForce.Path(), Amount: -v[drivingForce], Unit: "K difference",
+			Detail: fmt.Sprintf("The static head takes more than the %.2f K between the chest (%.2f degC) and the boiling liquor.", -short, v[ChestTemperature]-quantity.Zero),
+		}
+	}
 	return &fault.Infeasible{
 		Effect: "effect", Cause: fault.NoDrivingForce, Field: drivingForce.Path(), Amount: short, Unit: "K difference",
 		Detail: fmt.Sprintf("The liquor would boil at %.2f degC but the chest condenses at %.2f degC: the driving force is short by %.2f K.", v[BoilingTemperature]-quantity.Zero, v[ChestTemperature]-quantity.Zero, short),

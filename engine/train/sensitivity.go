@@ -52,18 +52,28 @@ func Sensitivities(p Plant, a *Answer, of []Number) ([]Sensitivity, error) {
 	}
 	var v state
 	copy(v[:], a.Value[:])
-	v[drivingForce] = a.DrivingForce
+	for n := numbers; n < unknowns; n++ {
+		v[n] = a.At(n)
+		if q.absent[n] {
+			v[n] = math.NaN()
+		}
+	}
 	var open, fixed []Number
 	place := [unknowns]int{}
 	for n := range unknowns {
-		if q.fixed[n] {
+		switch {
+		case q.absent[n]:
+		case q.fixed[n]:
 			fixed = append(fixed, n)
-		} else {
+		default:
 			place[n] = len(open)
 			open = append(open, n)
 		}
 	}
 	for _, n := range of {
+		if q.absent[n] {
+			return nil, &fault.Invalid{Field: n.Path(), Value: "not a part of this plant", Limit: "a number that is solved for", WayOut: "give a number of that part, or leave it out"}
+		}
 		if q.fixed[n] {
 			return nil, &fault.Invalid{Field: n.Path(), Value: "given", Limit: "a number that is solved for", WayOut: "ask for the sensitivities of what the question leaves out"}
 		}

@@ -202,6 +202,10 @@ func (r relation) straightIn(n Number) bool {
 		return n == Duty || n == Area || n == drivingForce
 	case boilingEquilibrium:
 		return n == BoilingTemperature
+	case temperatureDifference:
+		return n == drivingForce
+	case feedVolume, productVolume:
+		return n == FeedVolumeFlow || n == ProductVolumeFlow || n == FeedFlow || n == ProductFlow
 	case vapourPressure, steamPressure:
 		return false
 	}
@@ -348,7 +352,7 @@ func (s *search) fail(worst float64, where relation) bool {
 func (q *question) paths(b *block) []string {
 	var paths []string
 	for _, n := range b.numbers {
-		if n < numbers {
+		if n != drivingForce {
 			paths = append(paths, n.Path())
 		}
 	}
@@ -388,6 +392,8 @@ func reach(n Number, v *state) float64 {
 		return 0.1
 	case resistance:
 		return 1e-3
+	case length:
+		return 1
 	default:
 		return math.Max(math.Abs(v[n]), 1e-9)
 	}

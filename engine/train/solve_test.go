@@ -96,7 +96,8 @@ func chosen(t testing.TB, r *rand.Rand, l *liquor.Liquor, losses bool) (v state)
 func drawQuestion(r *rand.Rand, l *liquor.Liquor, v *state) (Plant, bool) {
 	p := Plant{Liquor: l}
 	order := r.Perm(int(numbers))
-	q := &question{liquor: l, equations: equationsOf(l)}
+	q := &question{liquor: l}
+	q.fit(nil)
 	give := func(n Number) {
 		p.Given = append(p.Given, Given{n, v[n]})
 		q.fixed[n] = true

@@ -79,11 +79,11 @@ func (q *question) blocks() ([]block, error) {
 // extensive are the numbers that grow with the plant. The equations hold for
 // a plant of any size, so one of these must be given: structure alone does not
 // see that.
-var extensive = [...]Number{FeedFlow, ProductFlow, SteamFlow, Area, VapourFlow, Duty, Evaporation}
+var extensive = [...]Number{FeedFlow, ProductFlow, SteamFlow, Area, VapourFlow, Duty, Evaporation, FeedVolumeFlow, ProductVolumeFlow, Circulation}
 
 func (q *question) sized() bool {
 	for _, n := range extensive {
-		if q.fixed[n] {
+		if q.fixed[n] && !q.absent[n] {
 			return true
 		}
 	}
@@ -115,9 +115,11 @@ func (s *search) sizeless(b *block, v state) bool {
 }
 
 func sizes() []string {
-	paths := make([]string, len(extensive))
-	for i, n := range extensive {
-		paths[i] = n.Path()
+	var paths []string
+	for _, n := range extensive {
+		if n < numbers {
+			paths = append(paths, n.Path())
+		}
 	}
 	return paths
 }
@@ -127,8 +129,8 @@ func sizes() []string {
 // still conflicts. Defaults are not the caller's words and stay.
 func (q *question) conflict() []string {
 	fixed := q.fixed
-	for n := range numbers {
-		if !fixed[n] || q.byDefault[n] {
+	for n := range unknowns {
+		if !fixed[n] || q.byDefault[n] || q.absent[n] {
 			continue
 		}
 		fixed[n] = false
@@ -137,8 +139,8 @@ func (q *question) conflict() []string {
 		}
 	}
 	var paths []string
-	for n := range numbers {
-		if fixed[n] && !q.byDefault[n] {
+	for n := range unknowns {
+		if fixed[n] && !q.byDefault[n] && !q.absent[n] {
 			paths = append(paths, n.Path())
 		}
 	}
@@ -151,7 +153,7 @@ func (q *question) closers(g numeric.Graph, m numeric.Matching, column []Number)
 	under := g.Under(m)
 	var paths []string
 	for c, n := range column {
-		if !under[c] || n >= numbers {
+		if !under[c] || n == drivingForce {
 			continue
 		}
 		fixed := q.fixed
