@@ -44,6 +44,9 @@ func (q *question) answer(v *state) (*Answer, error) {
 			a.Defaults = append(a.Defaults, Given{n, v[n]})
 		}
 	}
+	if q.levelByDefault() {
+		a.Defaults = append(a.Defaults, Given{LiquorLevel, 0})
+	}
 	if err := q.check(v, a); err != nil {
 		return nil, err
 	}

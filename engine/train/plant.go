@@ -83,7 +83,9 @@ type question struct {
 	fixed     [unknowns]bool
 	byDefault [unknowns]bool
 	absent    [unknowns]bool // of a part that the plant does not have
-	value     state          // NaN where not fixed
+
+	levelGiven bool  // if only as 0
+	value      state // NaN where not fixed
 }
 
 func newQuestion(p Plant) (*question, error) {
@@ -144,6 +146,7 @@ func newQuestion(p Plant) (*question, error) {
 // fit sees which parts the plant has: a part of which the question gives no
 // number adds neither unknowns nor equations.
 func (q *question) fit(find []Number) {
+	q.levelGiven = q.fixed[LiquorLevel]
 	level := q.fixed[LiquorLevel] && q.value[LiquorLevel] > 0 || contains(find, LiquorLevel)
 	has := parts{feedVolume: q.fixed[FeedVolumeFlow], productVolume: q.fixed[ProductVolumeFlow], level: level, circulation: q.fixed[Circulation]}
 	for _, part := range [...]struct {
@@ -155,6 +158,12 @@ func (q *question) fit(find []Number) {
 		}
 	}
 	q.equations = equationsOf(q.liquor, has)
+}
+
+// levelByDefault tells whether the liquor level was left out where it could have
+// been given.
+func (q *question) levelByDefault() bool {
+	return q.absent[LiquorLevel] && !q.levelGiven && q.absent[Circulation] && q.liquor.HasDensity()
 }
 
 // doorBounds are what a question may fix a number to: the bounds of the

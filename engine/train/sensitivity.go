@@ -36,6 +36,12 @@ func CheckQuestion(p Plant) (Check, error) {
 			c.Unknowns = append(c.Unknowns, n)
 		}
 	}
+	if q.levelByDefault() {
+		c.Defaults = append(c.Defaults, Given{LiquorLevel, 0})
+	}
+	if !q.fixed[LiquorLevel] {
+		c.Unknowns = append(c.Unknowns, LiquorLevel)
+	}
 	_, err = q.blocks()
 	return c, err
 }

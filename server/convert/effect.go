@@ -27,11 +27,13 @@ func EffectRequest(m *calandriav1.SolveEffectRequest) (train.Plant, error) {
 		give(train.FeedFlow, s.FlowKgPerH)
 		give(train.FeedSolids, s.SolidsFraction)
 		give(train.FeedTemperature, s.TemperatureC)
+		give(train.FeedVolumeFlow, s.VolumeFlowM3PerH)
 	}
 	if s := m.GetProduct(); s != nil {
 		give(train.ProductFlow, s.FlowKgPerH)
 		give(train.ProductSolids, s.SolidsFraction)
 		give(train.ProductTemperature, s.TemperatureC)
+		give(train.ProductVolumeFlow, s.VolumeFlowM3PerH)
 	}
 	if s := m.GetSteam(); s != nil {
 		give(train.SteamPressure, s.PressureKpaAbs)
@@ -55,6 +57,8 @@ func EffectRequest(m *calandriav1.SolveEffectRequest) (train.Plant, error) {
 		give(train.GasSideResistance, e.GasSideResistanceM2KPerW)
 		give(train.Entrainment, e.EntrainmentKgPerKg)
 		give(train.Subcooling, e.CondensateSubcoolingK)
+		give(train.LiquorLevel, e.LiquorLevelM)
+		give(train.Circulation, e.CirculationKgPerH)
 	}
 	give(train.Evaporation, m.EvaporationKgPerH)
 	give(train.Economy, m.Economy)
@@ -72,16 +76,22 @@ func EffectRequest(m *calandriav1.SolveEffectRequest) (train.Plant, error) {
 func EffectSolution(a *train.Answer) *calandriav1.EffectSolution {
 	read := func(n train.Number) float64 { return FromSI(n.Path(), a.Value[n]) }
 	shown := func(n train.Number) *float64 { v := read(n); return &v }
+	// A part that the plant does not have is absent.
+	part := func(n train.Number) *float64 { return existing(FromSI(n.Path(), a.At(n)), a.At(n) > 0) }
 	solution := &calandriav1.EffectSolution{
 		Feed: &calandriav1.Stream{
 			FlowKgPerH:     shown(train.FeedFlow),
 			SolidsFraction: shown(train.FeedSolids),
 			TemperatureC:   shown(train.FeedTemperature),
+
+			VolumeFlowM3PerH: part(train.FeedVolumeFlow),
 		},
 		Product: &calandriav1.Stream{
 			FlowKgPerH:     shown(train.ProductFlow),
 			SolidsFraction: shown(train.ProductSolids),
 			TemperatureC:   shown(train.ProductTemperature),
+
+			VolumeFlowM3PerH: part(train.ProductVolumeFlow),
 		},
 		Steam: &calandriav1.LiveSteam{
 			PressureKpaAbs:  shown(train.SteamPressure),
@@ -115,6 +125,10 @@ func EffectSolution(a *train.Answer) *calandriav1.EffectSolution {
 			HeatLossKw:                   FromSI("_kw", a.HeatLossRate),
 			VentKgPerH:                   FromSI("_kg_per_h", a.VentFlow),
 			EntrainedKgPerH:              FromSI("_kg_per_h", a.Entrained),
+			LiquorLevelM:                 a.LiquorLevel,
+			StaticHeadK:                  a.StaticHead,
+			CirculationKgPerH:            part(train.Circulation),
+			LiquorHeatingK:               nil,
 		},
 		EvaporationKgPerH:               read(train.Evaporation),
 		Economy:                         read(train.Economy),
@@ -127,6 +141,7 @@ func EffectSolution(a *train.Answer) *calandriav1.EffectSolution {
 		Provenance:      provenance(a.Models),
 		Sensitivities:   nil,
 	}
+	solution.Effect.LiquorHeatingK = existing(a.LiquorHeating, a.Circulation > 0)
 	if solution.GetEconomy() > 0 {
 		specific := 1 / solution.GetEconomy()
 		solution.SpecificSteamConsumptionKgPerKg = &specific
@@ -167,7 +182,7 @@ func Sensitivities(a *train.Answer, list []train.Sensitivity) []*calandriav1.Sen
 	for i, s := range list {
 		of, by := unitOf(s.Of.Path()), unitOf(s.By.Path())
 		m := &calandriav1.Sensitivity{Of: s.Of.Path(), By: s.By.Path(), Value: s.Value * by.factor / of.factor, Relative: nil}
-		x, y := a.Value[s.By], a.Value[s.Of]
+		x, y := a.At(s.By), a.At(s.Of)
 		if x != 0 && y != 0 && of.offset == 0 && by.offset == 0 {
 			m.Relative = pointer(s.Value * x / y)
 		}

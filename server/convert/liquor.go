@@ -41,5 +41,11 @@ func CustomLiquor(m *calandriav1.CustomLiquor) (*liquor.Liquor, error) {
 			c.EnthalpyTable = append(c.EnthalpyTable, liquor.EnthalpyRow{Solids: row.GetSolidsFraction(), Points: points})
 		}
 	}
+	switch density := m.GetDensity().(type) {
+	case *calandriav1.CustomLiquor_DensityKgPerM3:
+		c.Density = []float64{density.DensityKgPerM3}
+	case *calandriav1.CustomLiquor_DensityPolynomial:
+		c.Density = density.DensityPolynomial.GetCoefficientsKgPerM3()
+	}
 	return liquor.New(c)
 }

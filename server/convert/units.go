@@ -24,6 +24,7 @@ var units = []unit{
 	{"_kj_per_kg_k", "kJ/(kg K)", 1e3, 0},
 	{"_kj_per_kg", "kJ/kg", 1e3, 0},
 	{"_kg_per_h", "kg/h", 1. / 3600, 0},
+	{"_m3_per_h", "m3/h", 1. / 3600, 0},
 	{"_kg_per_kg", "kg/kg", 1, 0},
 	{"_kg_per_m3", "kg/m3", 1, 0},
 	{"_w_per_m_k", "W/(m K)", 1, 0},
@@ -36,6 +37,7 @@ var units = []unit{
 	{"_fraction_out", "kg/kg", 1, 0},
 	{"_m2", "m2", 1, 0},
 	{"_kw", "kW", 1e3, 0},
+	{"_m", "m", 1, 0},
 	{"_c", "degC", 1, quantity.Zero},
 	{"_k", "K", 1, 0},
 }
@@ -80,6 +82,8 @@ func Practical(value float64, si string) (float64, string) {
 		return value / 1e3, "kJ/(kg K)"
 	case "kg/s":
 		return value * 3600, "kg/h"
+	case "m3/s":
+		return value * 3600, "m3/h"
 	case "W":
 		return value / 1e3, "kW"
 	case "":

@@ -42,7 +42,14 @@ type CustomLiquor struct {
 	//	*CustomLiquor_SpecificHeatKjPerKgK
 	//	*CustomLiquor_SpecificHeatPolynomial
 	//	*CustomLiquor_EnthalpyTable
-	Heat          isCustomLiquor_Heat `protobuf_oneof:"heat"`
+	Heat isCustomLiquor_Heat `protobuf_oneof:"heat"`
+	// How heavy the liquor is; only static head and volume flows take it.
+	//
+	// Types that are valid to be assigned to Density:
+	//
+	//	*CustomLiquor_DensityKgPerM3
+	//	*CustomLiquor_DensityPolynomial
+	Density       isCustomLiquor_Density `protobuf_oneof:"density"`
 	unknownFields protoimpl.UnknownFields
 	sizeCache     protoimpl.SizeCache
 }
@@ -152,6 +159,31 @@ func (x *CustomLiquor) GetEnthalpyTable() *EnthalpyTable {
 	return nil
 }
 
+func (x *CustomLiquor) GetDensity() isCustomLiquor_Density {
+	if x != nil {
+		return x.Density
+	}
+	return nil
+}
+
+func (x *CustomLiquor) GetDensityKgPerM3() float64 {
+	if x != nil {
+		if x, ok := x.Density.(*CustomLiquor_DensityKgPerM3); ok {
+			return x.DensityKgPerM3
+		}
+	}
+	return 0
+}
+
+func (x *CustomLiquor) GetDensityPolynomial() *DensityPolynomial {
+	if x != nil {
+		if x, ok := x.Density.(*CustomLiquor_DensityPolynomial); ok {
+			return x.DensityPolynomial
+		}
+	}
+	return nil
+}
+
 type isCustomLiquor_Rise interface {
 	isCustomLiquor_Rise()
 }
@@ -203,6 +235,70 @@ func (*CustomLiquor_SpecificHeatPolynomial) isCustomLiquor_Heat() {}
 
 func (*CustomLiquor_EnthalpyTable) isCustomLiquor_Heat() {}
 
+type isCustomLiquor_Density interface {
+	isCustomLiquor_Density()
+}
+
+type CustomLiquor_DensityKgPerM3 struct {
+	// One density.
+	DensityKgPerM3 float64 `protobuf:"fixed64,8,opt,name=density_kg_per_m3,json=densityKgPerM3,proto3,oneof"`
+}
+
+type CustomLiquor_DensityPolynomial struct {
+	// A density that depends on the solids.
+	DensityPolynomial *DensityPolynomial `protobuf:"bytes,9,opt,name=density_polynomial,json=densityPolynomial,proto3,oneof"`
+}
+
+func (*CustomLiquor_DensityKgPerM3) isCustomLiquor_Density() {}
+
+func (*CustomLiquor_DensityPolynomial) isCustomLiquor_Density() {}
+
+// DensityPolynomial is rho = c0 + c1 w + c2 w^2 + ..., w the solids fraction.
+type DensityPolynomial struct {
+	state protoimpl.MessageState `protogen:"open.v1"`
+	// The coefficients, from the constant upwards.
+	CoefficientsKgPerM3 []float64 `protobuf:"fixed64,1,rep,packed,name=coefficients_kg_per_m3,json=coefficientsKgPerM3,proto3" json:"coefficients_kg_per_m3,omitempty"`
+	unknownFields       protoimpl.UnknownFields
+	sizeCache           protoimpl.SizeCache
+}
+
+func (x *DensityPolynomial) Reset() {
+	*x = DensityPolynomial{}
+	mi := &file_calandria_v1_liquor_proto_msgTypes[1]
+	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+	ms.StoreMessageInfo(mi)
+}
+
+func (x *DensityPolynomial) String() string {
+	return protoimpl.X.MessageStringOf(x)
+}
+
+func (*DensityPolynomial) ProtoMessage() {}
+
+func (x *DensityPolynomial) ProtoReflect() protoreflect.Message {
+	mi := &file_calandria_v1_liquor_proto_msgTypes[1]
+	if x != nil {
+		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+		if ms.LoadMessageInfo() == nil {
+			ms.StoreMessageInfo(mi)
+		}
+		return ms
+	}
+	return mi.MessageOf(x)
+}
+
+// Deprecated: Use DensityPolynomial.ProtoReflect.Descriptor instead.
+func (*DensityPolynomial) Descriptor() ([]byte, []int) {
+	return file_calandria_v1_liquor_proto_rawDescGZIP(), []int{1}
+}
+
+func (x *DensityPolynomial) GetCoefficientsKgPerM3() []float64 {
+	if x != nil {
+		return x.CoefficientsKgPerM3
+	}
+	return nil
+}
+
 // RisePolynomial is rise = c0 + c1 w + c2 w^2 + ..., w the solids fraction.
 type RisePolynomial struct {
 	state protoimpl.MessageState `protogen:"open.v1"`
@@ -214,7 +310,7 @@ type RisePolynomial struct {
 
 func (x *RisePolynomial) Reset() {
 	*x = RisePolynomial{}
-	mi := &file_calandria_v1_liquor_proto_msgTypes[1]
+	mi := &file_calandria_v1_liquor_proto_msgTypes[2]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -226,7 +322,7 @@ func (x *RisePolynomial) String() string {
 func (*RisePolynomial) ProtoMessage() {}
 
 func (x *RisePolynomial) ProtoReflect() protoreflect.Message {
-	mi := &file_calandria_v1_liquor_proto_msgTypes[1]
+	mi := &file_calandria_v1_liquor_proto_msgTypes[2]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -239,7 +335,7 @@ func (x *RisePolynomial) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use RisePolynomial.ProtoReflect.Descriptor instead.
 func (*RisePolynomial) Descriptor() ([]byte, []int) {
-	return file_calandria_v1_liquor_proto_rawDescGZIP(), []int{1}
+	return file_calandria_v1_liquor_proto_rawDescGZIP(), []int{2}
 }
 
 func (x *RisePolynomial) GetCoefficientsK() []float64 {
@@ -261,7 +357,7 @@ type SpecificHeatPolynomial struct {
 
 func (x *SpecificHeatPolynomial) Reset() {
 	*x = SpecificHeatPolynomial{}
-	mi := &file_calandria_v1_liquor_proto_msgTypes[2]
+	mi := &file_calandria_v1_liquor_proto_msgTypes[3]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -273,7 +369,7 @@ func (x *SpecificHeatPolynomial) String() string {
 func (*SpecificHeatPolynomial) ProtoMessage() {}
 
 func (x *SpecificHeatPolynomial) ProtoReflect() protoreflect.Message {
-	mi := &file_calandria_v1_liquor_proto_msgTypes[2]
+	mi := &file_calandria_v1_liquor_proto_msgTypes[3]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -286,7 +382,7 @@ func (x *SpecificHeatPolynomial) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use SpecificHeatPolynomial.ProtoReflect.Descriptor instead.
 func (*SpecificHeatPolynomial) Descriptor() ([]byte, []int) {
-	return file_calandria_v1_liquor_proto_rawDescGZIP(), []int{2}
+	return file_calandria_v1_liquor_proto_rawDescGZIP(), []int{3}
 }
 
 func (x *SpecificHeatPolynomial) GetCoefficientsKjPerKgK() []float64 {
@@ -309,7 +405,7 @@ type DuhringLines struct {
 
 func (x *DuhringLines) Reset() {
 	*x = DuhringLines{}
-	mi := &file_calandria_v1_liquor_proto_msgTypes[3]
+	mi := &file_calandria_v1_liquor_proto_msgTypes[4]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -321,7 +417,7 @@ func (x *DuhringLines) String() string {
 func (*DuhringLines) ProtoMessage() {}
 
 func (x *DuhringLines) ProtoReflect() protoreflect.Message {
-	mi := &file_calandria_v1_liquor_proto_msgTypes[3]
+	mi := &file_calandria_v1_liquor_proto_msgTypes[4]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -334,7 +430,7 @@ func (x *DuhringLines) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use DuhringLines.ProtoReflect.Descriptor instead.
 func (*DuhringLines) Descriptor() ([]byte, []int) {
-	return file_calandria_v1_liquor_proto_rawDescGZIP(), []int{3}
+	return file_calandria_v1_liquor_proto_rawDescGZIP(), []int{4}
 }
 
 func (x *DuhringLines) GetLines() []*DuhringLine {
@@ -359,7 +455,7 @@ type DuhringLine struct {
 
 func (x *DuhringLine) Reset() {
 	*x = DuhringLine{}
-	mi := &file_calandria_v1_liquor_proto_msgTypes[4]
+	mi := &file_calandria_v1_liquor_proto_msgTypes[5]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -371,7 +467,7 @@ func (x *DuhringLine) String() string {
 func (*DuhringLine) ProtoMessage() {}
 
 func (x *DuhringLine) ProtoReflect() protoreflect.Message {
-	mi := &file_calandria_v1_liquor_proto_msgTypes[4]
+	mi := &file_calandria_v1_liquor_proto_msgTypes[5]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -384,7 +480,7 @@ func (x *DuhringLine) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use DuhringLine.ProtoReflect.Descriptor instead.
 func (*DuhringLine) Descriptor() ([]byte, []int) {
-	return file_calandria_v1_liquor_proto_rawDescGZIP(), []int{4}
+	return file_calandria_v1_liquor_proto_rawDescGZIP(), []int{5}
 }
 
 func (x *DuhringLine) GetSolidsFraction() float64 {
@@ -421,7 +517,7 @@ type EnthalpyTable struct {
 
 func (x *EnthalpyTable) Reset() {
 	*x = EnthalpyTable{}
-	mi := &file_calandria_v1_liquor_proto_msgTypes[5]
+	mi := &file_calandria_v1_liquor_proto_msgTypes[6]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -433,7 +529,7 @@ func (x *EnthalpyTable) String() string {
 func (*EnthalpyTable) ProtoMessage() {}
 
 func (x *EnthalpyTable) ProtoReflect() protoreflect.Message {
-	mi := &file_calandria_v1_liquor_proto_msgTypes[5]
+	mi := &file_calandria_v1_liquor_proto_msgTypes[6]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -446,7 +542,7 @@ func (x *EnthalpyTable) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use EnthalpyTable.ProtoReflect.Descriptor instead.
 func (*EnthalpyTable) Descriptor() ([]byte, []int) {
-	return file_calandria_v1_liquor_proto_rawDescGZIP(), []int{5}
+	return file_calandria_v1_liquor_proto_rawDescGZIP(), []int{6}
 }
 
 func (x *EnthalpyTable) GetRows() []*EnthalpyRow {
@@ -469,7 +565,7 @@ type EnthalpyRow struct {
 
 func (x *EnthalpyRow) Reset() {
 	*x = EnthalpyRow{}
-	mi := &file_calandria_v1_liquor_proto_msgTypes[6]
+	mi := &file_calandria_v1_liquor_proto_msgTypes[7]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -481,7 +577,7 @@ func (x *EnthalpyRow) String() string {
 func (*EnthalpyRow) ProtoMessage() {}
 
 func (x *EnthalpyRow) ProtoReflect() protoreflect.Message {
-	mi := &file_calandria_v1_liquor_proto_msgTypes[6]
+	mi := &file_calandria_v1_liquor_proto_msgTypes[7]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -494,7 +590,7 @@ func (x *EnthalpyRow) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use EnthalpyRow.ProtoReflect.Descriptor instead.
 func (*EnthalpyRow) Descriptor() ([]byte, []int) {
-	return file_calandria_v1_liquor_proto_rawDescGZIP(), []int{6}
+	return file_calandria_v1_liquor_proto_rawDescGZIP(), []int{7}
 }
 
 func (x *EnthalpyRow) GetSolidsFraction() float64 {
@@ -525,7 +621,7 @@ type EnthalpyPoint struct {
 
 func (x *EnthalpyPoint) Reset() {
 	*x = EnthalpyPoint{}
-	mi := &file_calandria_v1_liquor_proto_msgTypes[7]
+	mi := &file_calandria_v1_liquor_proto_msgTypes[8]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -537,7 +633,7 @@ func (x *EnthalpyPoint) String() string {
 func (*EnthalpyPoint) ProtoMessage() {}
 
 func (x *EnthalpyPoint) ProtoReflect() protoreflect.Message {
-	mi := &file_calandria_v1_liquor_proto_msgTypes[7]
+	mi := &file_calandria_v1_liquor_proto_msgTypes[8]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -550,7 +646,7 @@ func (x *EnthalpyPoint) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use EnthalpyPoint.ProtoReflect.Descriptor instead.
 func (*EnthalpyPoint) Descriptor() ([]byte, []int) {
-	return file_calandria_v1_liquor_proto_rawDescGZIP(), []int{7}
+	return file_calandria_v1_liquor_proto_rawDescGZIP(), []int{8}
 }
 
 func (x *EnthalpyPoint) GetTemperatureC() float64 {
@@ -571,7 +667,7 @@ var File_calandria_v1_liquor_proto protoreflect.FileDescriptor
 
 const file_calandria_v1_liquor_proto_rawDesc = "" +
 	"\n" +
-	"\x19calandria/v1/liquor.proto\x12\fcalandria.v1\x1a\x1bbuf/validate/validate.proto\"\x81\x04\n" +
+	"\x19calandria/v1/liquor.proto\x12\fcalandria.v1\x1a\x1bbuf/validate/validate.proto\"\xa6\x05\n" +
 	"\fCustomLiquor\x12 \n" +
 	"\x06source\x18\x01 \x01(\tB\b\xbaH\x05r\x03\x18\xc8\x01R\x06source\x122\n" +
 	"\x06rise_k\x18\x02 \x01(\x01B\x19\xbaH\x16\x12\x14@\x01\x19\x00\x00\x00\x00\x00\x00i@)\x00\x00\x00\x00\x00\x00\x00\x00H\x00R\x05riseK\x12G\n" +
@@ -579,9 +675,14 @@ const file_calandria_v1_liquor_proto_rawDesc = "" +
 	"\aduhring\x18\x04 \x01(\v2\x1a.calandria.v1.DuhringLinesH\x00R\aduhring\x12T\n" +
 	"\x19specific_heat_kj_per_kg_k\x18\x05 \x01(\x01B\x19\xbaH\x16\x12\x14@\x01\x19\x00\x00\x00\x00\x00\x004@!\x00\x00\x00\x00\x00\x00\x00\x00H\x01R\x14specificHeatKjPerKgK\x12`\n" +
 	"\x18specific_heat_polynomial\x18\x06 \x01(\v2$.calandria.v1.SpecificHeatPolynomialH\x01R\x16specificHeatPolynomial\x12D\n" +
-	"\x0eenthalpy_table\x18\a \x01(\v2\x1b.calandria.v1.EnthalpyTableH\x01R\renthalpyTableB\r\n" +
+	"\x0eenthalpy_table\x18\a \x01(\v2\x1b.calandria.v1.EnthalpyTableH\x01R\renthalpyTable\x12F\n" +
+	"\x11density_kg_per_m3\x18\b \x01(\x01B\x19\xbaH\x16\x12\x14@\x01\x19\x00\x00\x00\x00\x00\x88\xb3@)\x00\x00\x00\x00\x00\x00i@H\x02R\x0edensityKgPerM3\x12P\n" +
+	"\x12density_polynomial\x18\t \x01(\v2\x1f.calandria.v1.DensityPolynomialH\x02R\x11densityPolynomialB\r\n" +
 	"\x04rise\x12\x05\xbaH\x02\b\x01B\r\n" +
-	"\x04heat\x12\x05\xbaH\x02\b\x01\"[\n" +
+	"\x04heat\x12\x05\xbaH\x02\b\x01B\t\n" +
+	"\adensity\"l\n" +
+	"\x11DensityPolynomial\x12W\n" +
+	"\x16coefficients_kg_per_m3\x18\x01 \x03(\x01B\"\xbaH\x1f\x92\x01\x1c\b\x01\x10\f\"\x16\x12\x14@\x01\x19\x00\x00\x00\x00\x80\x84.A)\x00\x00\x00\x00\x80\x84.\xc1R\x13coefficientsKgPerM3\"[\n" +
 	"\x0eRisePolynomial\x12I\n" +
 	"\x0ecoefficients_k\x18\x01 \x03(\x01B\"\xbaH\x1f\x92\x01\x1c\b\x01\x10\f\"\x16\x12\x14@\x01\x19\x00\x00\x00\x00\x80\x84.A)\x00\x00\x00\x00\x80\x84.\xc1R\rcoefficientsK\"t\n" +
 	"\x16SpecificHeatPolynomial\x12Z\n" +
@@ -623,30 +724,32 @@ func file_calandria_v1_liquor_proto_rawDescGZIP() []byte {
 	return file_calandria_v1_liquor_proto_rawDescData
 }
 
-var file_calandria_v1_liquor_proto_msgTypes = make([]protoimpl.MessageInfo, 8)
+var file_calandria_v1_liquor_proto_msgTypes = make([]protoimpl.MessageInfo, 9)
 var file_calandria_v1_liquor_proto_goTypes = []any{
 	(*CustomLiquor)(nil),           // 0: calandria.v1.CustomLiquor
-	(*RisePolynomial)(nil),         // 1: calandria.v1.RisePolynomial
-	(*SpecificHeatPolynomial)(nil), // 2: calandria.v1.SpecificHeatPolynomial
-	(*DuhringLines)(nil),           // 3: calandria.v1.DuhringLines
-	(*DuhringLine)(nil),            // 4: calandria.v1.DuhringLine
-	(*EnthalpyTable)(nil),          // 5: calandria.v1.EnthalpyTable
-	(*EnthalpyRow)(nil),            // 6: calandria.v1.EnthalpyRow
-	(*EnthalpyPoint)(nil),          // 7: calandria.v1.EnthalpyPoint
+	(*DensityPolynomial)(nil),      // 1: calandria.v1.DensityPolynomial
+	(*RisePolynomial)(nil),         // 2: calandria.v1.RisePolynomial
+	(*SpecificHeatPolynomial)(nil), // 3: calandria.v1.SpecificHeatPolynomial
+	(*DuhringLines)(nil),           // 4: calandria.v1.DuhringLines
+	(*DuhringLine)(nil),            // 5: calandria.v1.DuhringLine
+	(*EnthalpyTable)(nil),          // 6: calandria.v1.EnthalpyTable
+	(*EnthalpyRow)(nil),            // 7: calandria.v1.EnthalpyRow
+	(*EnthalpyPoint)(nil),          // 8: calandria.v1.EnthalpyPoint
 }
 var file_calandria_v1_liquor_proto_depIdxs = []int32{
-	1, // 0: calandria.v1.CustomLiquor.rise_polynomial:type_name -> calandria.v1.RisePolynomial
-	3, // 1: calandria.v1.CustomLiquor.duhring:type_name -> calandria.v1.DuhringLines
-	2, // 2: calandria.v1.CustomLiquor.specific_heat_polynomial:type_name -> calandria.v1.SpecificHeatPolynomial
-	5, // 3: calandria.v1.CustomLiquor.enthalpy_table:type_name -> calandria.v1.EnthalpyTable
-	4, // 4: calandria.v1.DuhringLines.lines:type_name -> calandria.v1.DuhringLine
-	6, // 5: calandria.v1.EnthalpyTable.rows:type_name -> calandria.v1.EnthalpyRow
-	7, // 6: calandria.v1.EnthalpyRow.points:type_name -> calandria.v1.EnthalpyPoint
-	7, // [7:7] is the sub-list for method output_type
-	7, // [7:7] is the sub-list for method input_type
-	7, // [7:7] is the sub-list for extension type_name
-	7, // [7:7] is the sub-list for extension extendee
-	0, // [0:7] is the sub-list for field type_name
+	2, // 0: calandria.v1.CustomLiquor.rise_polynomial:type_name -> calandria.v1.RisePolynomial
+	4, // 1: calandria.v1.CustomLiquor.duhring:type_name -> calandria.v1.DuhringLines
+	3, // 2: calandria.v1.CustomLiquor.specific_heat_polynomial:type_name -> calandria.v1.SpecificHeatPolynomial
+	6, // 3: calandria.v1.CustomLiquor.enthalpy_table:type_name -> calandria.v1.EnthalpyTable
+	1, // 4: calandria.v1.CustomLiquor.density_polynomial:type_name -> calandria.v1.DensityPolynomial
+	5, // 5: calandria.v1.DuhringLines.lines:type_name -> calandria.v1.DuhringLine
+	7, // 6: calandria.v1.EnthalpyTable.rows:type_name -> calandria.v1.EnthalpyRow
+	8, // 7: calandria.v1.EnthalpyRow.points:type_name -> calandria.v1.EnthalpyPoint
+	8, // [8:8] is the sub-list for method output_type
+	8, // [8:8] is the sub-list for method input_type
+	8, // [8:8] is the sub-list for extension type_name
+	8, // [8:8] is the sub-list for extension extendee
+	0, // [0:8] is the sub-list for field type_name
 }
 
 func init() { file_calandria_v1_liquor_proto_init() }
@@ -661,17 +764,19 @@ func file_calandria_v1_liquor_proto_init() {
 		(*CustomLiquor_SpecificHeatKjPerKgK)(nil),
 		(*CustomLiquor_SpecificHeatPolynomial)(nil),
 		(*CustomLiquor_EnthalpyTable)(nil),
+		(*CustomLiquor_DensityKgPerM3)(nil),
+		(*CustomLiquor_DensityPolynomial)(nil),
 	}
-	file_calandria_v1_liquor_proto_msgTypes[4].OneofWrappers = []any{}
-	file_calandria_v1_liquor_proto_msgTypes[6].OneofWrappers = []any{}
+	file_calandria_v1_liquor_proto_msgTypes[5].OneofWrappers = []any{}
 	file_calandria_v1_liquor_proto_msgTypes[7].OneofWrappers = []any{}
+	file_calandria_v1_liquor_proto_msgTypes[8].OneofWrappers = []any{}
 	type x struct{}
 	out := protoimpl.TypeBuilder{
 		File: protoimpl.DescBuilder{
 			GoPackagePath: reflect.TypeOf(x{}).PkgPath(),
 			RawDescriptor: unsafe.Slice(unsafe.StringData(file_calandria_v1_liquor_proto_rawDesc), len(file_calandria_v1_liquor_proto_rawDesc)),
 			NumEnums:      0,
-			NumMessages:   8,
+			NumMessages:   9,
 			NumExtensions: 0,
 			NumServices:   0,
 		},

@@ -161,9 +161,12 @@ type Stream struct {
 	// Solids per mass of liquor, 0 to 1.
 	SolidsFraction *float64 `protobuf:"fixed64,2,opt,name=solids_fraction,json=solidsFraction,proto3,oneof" json:"solids_fraction,omitempty"`
 	// Temperature.
-	TemperatureC  *float64 `protobuf:"fixed64,3,opt,name=temperature_c,json=temperatureC,proto3,oneof" json:"temperature_c,omitempty"`
-	unknownFields protoimpl.UnknownFields
-	sizeCache     protoimpl.SizeCache
+	TemperatureC *float64 `protobuf:"fixed64,3,opt,name=temperature_c,json=temperatureC,proto3,oneof" json:"temperature_c,omitempty"`
+	// Volume flow at the stream's own temperature, in place of the mass flow; takes
+	// a liquor whose density is known.
+	VolumeFlowM3PerH *float64 `protobuf:"fixed64,4,opt,name=volume_flow_m3_per_h,json=volumeFlowM3PerH,proto3,oneof" json:"volume_flow_m3_per_h,omitempty"`
+	unknownFields    protoimpl.UnknownFields
+	sizeCache        protoimpl.SizeCache
 }
 
 func (x *Stream) Reset() {
@@ -213,6 +216,13 @@ func (x *Stream) GetSolidsFraction() float64 {
 func (x *Stream) GetTemperatureC() float64 {
 	if x != nil && x.TemperatureC != nil {
 		return *x.TemperatureC
+	}
+	return 0
+}
+
+func (x *Stream) GetVolumeFlowM3PerH() float64 {
+	if x != nil && x.VolumeFlowM3PerH != nil {
+		return *x.VolumeFlowM3PerH
 	}
 	return 0
 }
@@ -332,8 +342,15 @@ type Effect struct {
 	EntrainmentKgPerKg *float64 `protobuf:"fixed64,13,opt,name=entrainment_kg_per_kg,json=entrainmentKgPerKg,proto3,oneof" json:"entrainment_kg_per_kg,omitempty"`
 	// Cooling of the condensate below the chest temperature; 0 when left out.
 	CondensateSubcoolingK *float64 `protobuf:"fixed64,14,opt,name=condensate_subcooling_k,json=condensateSubcoolingK,proto3,oneof" json:"condensate_subcooling_k,omitempty"`
-	unknownFields         protoimpl.UnknownFields
-	sizeCache             protoimpl.SizeCache
+	// Height of the liquor over the bottom of the heating surface; 0 when left out.
+	// Half of it gives the static head, with the density of clear liquor: foam and
+	// bubbles in the tubes make the true one less.
+	LiquorLevelM *float64 `protobuf:"fixed64,15,opt,name=liquor_level_m,json=liquorLevelM,proto3,oneof" json:"liquor_level_m,omitempty"`
+	// Liquor pumped through the heater. Its driving force is then the logarithmic
+	// mean over the heating of that liquor, without static head.
+	CirculationKgPerH *float64 `protobuf:"fixed64,16,opt,name=circulation_kg_per_h,json=circulationKgPerH,proto3,oneof" json:"circulation_kg_per_h,omitempty"`
+	unknownFields     protoimpl.UnknownFields
+	sizeCache         protoimpl.SizeCache
 }
 
 func (x *Effect) Reset() {
@@ -464,6 +481,20 @@ func (x *Effect) GetCondensateSubcoolingK() float64 {
 	return 0
 }
 
+func (x *Effect) GetLiquorLevelM() float64 {
+	if x != nil && x.LiquorLevelM != nil {
+		return *x.LiquorLevelM
+	}
+	return 0
+}
+
+func (x *Effect) GetCirculationKgPerH() float64 {
+	if x != nil && x.CirculationKgPerH != nil {
+		return *x.CirculationKgPerH
+	}
+	return 0
+}
+
 // SolvedEffect is an effect with every number known.
 type SolvedEffect struct {
 	state protoimpl.MessageState `protogen:"open.v1"`
@@ -501,7 +532,8 @@ type SolvedEffect struct {
 	LiquorOutKgPerH float64 `protobuf:"fixed64,16,opt,name=liquor_out_kg_per_h,json=liquorOutKgPerH,proto3" json:"liquor_out_kg_per_h,omitempty"`
 	// How much hotter the liquor boils than water at the same pressure.
 	BoilingPointRiseK float64 `protobuf:"fixed64,17,opt,name=boiling_point_rise_k,json=boilingPointRiseK,proto3" json:"boiling_point_rise_k,omitempty"`
-	// Chest temperature less boiling temperature.
+	// Chest temperature less boiling temperature and static head; with circulation
+	// the logarithmic mean over the heating of the liquor.
 	DrivingForceK float64 `protobuf:"fixed64,18,opt,name=driving_force_k,json=drivingForceK,proto3" json:"driving_force_k,omitempty"`
 	// Enthalpy of the vapour, superheated by the rise.
 	VapourEnthalpyKjPerKg float64 `protobuf:"fixed64,19,opt,name=vapour_enthalpy_kj_per_kg,json=vapourEnthalpyKjPerKg,proto3" json:"vapour_enthalpy_kj_per_kg,omitempty"`
@@ -515,8 +547,16 @@ type SolvedEffect struct {
 	VentKgPerH float64 `protobuf:"fixed64,23,opt,name=vent_kg_per_h,json=ventKgPerH,proto3" json:"vent_kg_per_h,omitempty"`
 	// Liquor carried over with the vapour.
 	EntrainedKgPerH float64 `protobuf:"fixed64,24,opt,name=entrained_kg_per_h,json=entrainedKgPerH,proto3" json:"entrained_kg_per_h,omitempty"`
-	unknownFields   protoimpl.UnknownFields
-	sizeCache       protoimpl.SizeCache
+	// Height of the liquor over the bottom of the heating surface.
+	LiquorLevelM float64 `protobuf:"fixed64,25,opt,name=liquor_level_m,json=liquorLevelM,proto3" json:"liquor_level_m,omitempty"`
+	// How much hotter liquor boils at half that height than at the surface.
+	StaticHeadK float64 `protobuf:"fixed64,26,opt,name=static_head_k,json=staticHeadK,proto3" json:"static_head_k,omitempty"`
+	// Liquor pumped through the heater; absent without it.
+	CirculationKgPerH *float64 `protobuf:"fixed64,27,opt,name=circulation_kg_per_h,json=circulationKgPerH,proto3,oneof" json:"circulation_kg_per_h,omitempty"`
+	// How much that liquor is heated on its way; absent without it.
+	LiquorHeatingK *float64 `protobuf:"fixed64,28,opt,name=liquor_heating_k,json=liquorHeatingK,proto3,oneof" json:"liquor_heating_k,omitempty"`
+	unknownFields  protoimpl.UnknownFields
+	sizeCache      protoimpl.SizeCache
 }
 
 func (x *SolvedEffect) Reset() {
@@ -713,6 +753,34 @@ func (x *SolvedEffect) GetVentKgPerH() float64 {
 func (x *SolvedEffect) GetEntrainedKgPerH() float64 {
 	if x != nil {
 		return x.EntrainedKgPerH
+	}
+	return 0
+}
+
+func (x *SolvedEffect) GetLiquorLevelM() float64 {
+	if x != nil {
+		return x.LiquorLevelM
+	}
+	return 0
+}
+
+func (x *SolvedEffect) GetStaticHeadK() float64 {
+	if x != nil {
+		return x.StaticHeadK
+	}
+	return 0
+}
+
+func (x *SolvedEffect) GetCirculationKgPerH() float64 {
+	if x != nil && x.CirculationKgPerH != nil {
+		return *x.CirculationKgPerH
+	}
+	return 0
+}
+
+func (x *SolvedEffect) GetLiquorHeatingK() float64 {
+	if x != nil && x.LiquorHeatingK != nil {
+		return *x.LiquorHeatingK
 	}
 	return 0
 }
@@ -1164,7 +1232,7 @@ var File_calandria_v1_train_proto protoreflect.FileDescriptor
 
 const file_calandria_v1_train_proto_rawDesc = "" +
 	"\n" +
-	"\x18calandria/v1/train.proto\x12\fcalandria.v1\x1a\x1bbuf/validate/validate.proto\x1a\x19calandria/v1/liquor.proto\x1a\x1dcalandria/v1/provenance.proto\x1a\x1cgoogle/api/annotations.proto\"\xcd\x06\n" +
+	"\x18calandria/v1/train.proto\x12\fcalandria.v1\x1a\x1bbuf/validate/validate.proto\x1a\x19calandria/v1/liquor.proto\x1a\x1dcalandria/v1/provenance.proto\x1a\x1cgoogle/api/annotations.proto\"\xe4\x06\n" +
 	"\x12SolveEffectRequest\x12G\n" +
 	"\rcustom_liquor\x18\x02 \x01(\v2\x1a.calandria.v1.CustomLiquorB\x06\xbaH\x03\xc8\x01\x01R\fcustomLiquor\x12(\n" +
 	"\x04feed\x18\x03 \x01(\v2\x14.calandria.v1.StreamR\x04feed\x12.\n" +
@@ -1172,8 +1240,8 @@ const file_calandria_v1_train_proto_rawDesc = "" +
 	"\x05steam\x18\x05 \x01(\v2\x17.calandria.v1.LiveSteamR\x05steam\x12,\n" +
 	"\x06effect\x18\x06 \x01(\v2\x14.calandria.v1.EffectR\x06effect\x12O\n" +
 	"\x14evaporation_kg_per_h\x18\a \x01(\x01B\x19\xbaH\x16\x12\x14@\x01\x19\x00\x00\x00\x00e\xcd\xcdA)\x00\x00\x00\x00\x00\x00\x00\x00H\x00R\x11evaporationKgPerH\x88\x01\x01\x128\n" +
-	"\aeconomy\x18\b \x01(\x01B\x19\xbaH\x16\x12\x14@\x01\x19\x00\x00\x00\x00\x00@\x8f@!\x00\x00\x00\x00\x00\x00\x00\x00H\x01R\aeconomy\x88\x01\x01\x12\xe8\x01\n" +
-	"\x04find\x18\t \x03(\tB\xd3\x01\xbaH\xcf\x01\x92\x01\xcb\x01\x10\a\x18\x01\"\xc4\x01r\xc1\x01R\x11steam.superheat_kR\x16steam.dryness_fractionR\x19effect.heat_loss_fractionR\x14effect.vent_fractionR%effect.gas_side_resistance_m2_k_per_wR\x1ceffect.entrainment_kg_per_kgR\x1eeffect.condensate_subcooling_kR\x04find\x12;\n" +
+	"\aeconomy\x18\b \x01(\x01B\x19\xbaH\x16\x12\x14@\x01\x19\x00\x00\x00\x00\x00@\x8f@!\x00\x00\x00\x00\x00\x00\x00\x00H\x01R\aeconomy\x88\x01\x01\x12\xff\x01\n" +
+	"\x04find\x18\t \x03(\tB\xea\x01\xbaH\xe6\x01\x92\x01\xe2\x01\x10\b\x18\x01\"\xdb\x01r\xd8\x01R\x11steam.superheat_kR\x16steam.dryness_fractionR\x19effect.heat_loss_fractionR\x14effect.vent_fractionR%effect.gas_side_resistance_m2_k_per_wR\x1ceffect.entrainment_kg_per_kgR\x1eeffect.condensate_subcooling_kR\x15effect.liquor_level_mR\x04find\x12;\n" +
 	"\x10sensitivities_of\x18\n" +
 	" \x03(\tB\x10\xbaH\r\x92\x01\n" +
 	"\x10\x14\x18\x01\"\x04r\x02\x18<R\x0fsensitivitiesOf\x12D\n" +
@@ -1181,15 +1249,17 @@ const file_calandria_v1_train_proto_rawDesc = "" +
 	"\x15_evaporation_kg_per_hB\n" +
 	"\n" +
 	"\b_economyB\x19\n" +
-	"\x17_require_engine_version\"\x91\x02\n" +
+	"\x17_require_engine_version\"\xfa\x02\n" +
 	"\x06Stream\x12A\n" +
 	"\rflow_kg_per_h\x18\x01 \x01(\x01B\x19\xbaH\x16\x12\x14@\x01\x19\x00\x00\x00\x00e\xcd\xcdA!\x00\x00\x00\x00\x00\x00\x00\x00H\x00R\n" +
 	"flowKgPerH\x88\x01\x01\x12G\n" +
 	"\x0fsolids_fraction\x18\x02 \x01(\x01B\x19\xbaH\x16\x12\x14@\x01\x19\x00\x00\x00\x00\x00\x00\xf0?)\x00\x00\x00\x00\x00\x00\x00\x00H\x01R\x0esolidsFraction\x88\x01\x01\x12C\n" +
-	"\rtemperature_c\x18\x03 \x01(\x01B\x19\xbaH\x16\x12\x14@\x01\x19\x00\x00\x00\x00\x00\xe0u@)\x00\x00\x00\x00\x00\x00\x00\x00H\x02R\ftemperatureC\x88\x01\x01B\x10\n" +
+	"\rtemperature_c\x18\x03 \x01(\x01B\x19\xbaH\x16\x12\x14@\x01\x19\x00\x00\x00\x00\x00\xe0u@)\x00\x00\x00\x00\x00\x00\x00\x00H\x02R\ftemperatureC\x88\x01\x01\x12N\n" +
+	"\x14volume_flow_m3_per_h\x18\x04 \x01(\x01B\x19\xbaH\x16\x12\x14@\x01\x19\x00\x00\x00\x00\xd0\x12cA!\x00\x00\x00\x00\x00\x00\x00\x00H\x03R\x10volumeFlowM3PerH\x88\x01\x01B\x10\n" +
 	"\x0e_flow_kg_per_hB\x12\n" +
 	"\x10_solids_fractionB\x10\n" +
-	"\x0e_temperature_c\"\xc7\x03\n" +
+	"\x0e_temperature_cB\x17\n" +
+	"\x15_volume_flow_m3_per_h\"\xc7\x03\n" +
 	"\tLiveSteam\x12H\n" +
 	"\x10pressure_kpa_abs\x18\x01 \x01(\x01B\x19\xbaH\x16\x12\x14@\x01\x19\x00\x00\x00\x00\x00\x1d\xd0@!\x00\x00\x00\x00\x00\x00\x00\x00H\x00R\x0epressureKpaAbs\x88\x01\x01\x12C\n" +
 	"\rtemperature_c\x18\x02 \x01(\x01B\x19\xbaH\x16\x12\x14@\x01\x19\x00\x00\x00\x00\x00\xe0u@)\x00\x00\x00\x00\x00\x00\x00\x00H\x01R\ftemperatureC\x88\x01\x01\x12?\n" +
@@ -1202,7 +1272,7 @@ const file_calandria_v1_train_proto_rawDesc = "" +
 	"\x0e_temperature_cB\x0e\n" +
 	"\f_superheat_kB\x13\n" +
 	"\x11_dryness_fractionB\x10\n" +
-	"\x0e_flow_kg_per_h\"\xa6\v\n" +
+	"\x0e_flow_kg_per_h\"\xe9\f\n" +
 	"\x06Effect\x127\n" +
 	"\aarea_m2\x18\x01 \x01(\x01B\x19\xbaH\x16\x12\x14@\x01\x19\x00\x00\x00\x00\xd0\x12cA!\x00\x00\x00\x00\x00\x00\x00\x00H\x00R\x06areaM2\x88\x01\x01\x12R\n" +
 	"\x16coefficient_w_per_m2_k\x18\x02 \x01(\x01B\x19\xbaH\x16\x12\x14@\x01\x19\x00\x00\x00\x00\x00j\xf8@!\x00\x00\x00\x00\x00\x00\x00\x00H\x01R\x12coefficientWPerM2K\x88\x01\x01\x12H\n" +
@@ -1219,7 +1289,9 @@ const file_calandria_v1_train_proto_rawDesc = "" +
 	"R\fventFraction\x88\x01\x01\x12`\n" +
 	"\x1egas_side_resistance_m2_k_per_w\x18\f \x01(\x01B\x19\xbaH\x16\x12\x14@\x01\x19\x00\x00\x00\x00\x00\x00\xf0?)\x00\x00\x00\x00\x00\x00\x00\x00H\vR\x18gasSideResistanceM2KPerW\x88\x01\x01\x12Q\n" +
 	"\x15entrainment_kg_per_kg\x18\r \x01(\x01B\x19\xbaH\x16\x12\x14@\x01\x19\x00\x00\x00\x00\x00\x00\xf0?)\x00\x00\x00\x00\x00\x00\x00\x00H\fR\x12entrainmentKgPerKg\x88\x01\x01\x12V\n" +
-	"\x17condensate_subcooling_k\x18\x0e \x01(\x01B\x19\xbaH\x16\x12\x14@\x01\x19\x00\x00\x00\x00\x00\xc0r@)\x00\x00\x00\x00\x00\x00\x00\x00H\rR\x15condensateSubcoolingK\x88\x01\x01B\n" +
+	"\x17condensate_subcooling_k\x18\x0e \x01(\x01B\x19\xbaH\x16\x12\x14@\x01\x19\x00\x00\x00\x00\x00\xc0r@)\x00\x00\x00\x00\x00\x00\x00\x00H\rR\x15condensateSubcoolingK\x88\x01\x01\x12D\n" +
+	"\x0eliquor_level_m\x18\x0f \x01(\x01B\x19\xbaH\x16\x12\x14@\x01\x19\x00\x00\x00\x00\x00\x00Y@)\x00\x00\x00\x00\x00\x00\x00\x00H\x0eR\fliquorLevelM\x88\x01\x01\x12O\n" +
+	"\x14circulation_kg_per_h\x18\x10 \x01(\x01B\x19\xbaH\x16\x12\x14@\x01\x19\x00\x00\x00 _\xa0\x02B!\x00\x00\x00\x00\x00\x00\x00\x00H\x0fR\x11circulationKgPerH\x88\x01\x01B\n" +
 	"\n" +
 	"\b_area_m2B\x19\n" +
 	"\x17_coefficient_w_per_m2_kB\x13\n" +
@@ -1235,7 +1307,10 @@ const file_calandria_v1_train_proto_rawDesc = "" +
 	"\x0e_vent_fractionB!\n" +
 	"\x1f_gas_side_resistance_m2_k_per_wB\x18\n" +
 	"\x16_entrainment_kg_per_kgB\x1a\n" +
-	"\x18_condensate_subcooling_k\"\xe8\b\n" +
+	"\x18_condensate_subcooling_kB\x11\n" +
+	"\x0f_liquor_level_mB\x17\n" +
+	"\x15_circulation_kg_per_h\"\xc5\n" +
+	"\n" +
 	"\fSolvedEffect\x12\x17\n" +
 	"\aarea_m2\x18\x01 \x01(\x01R\x06areaM2\x122\n" +
 	"\x16coefficient_w_per_m2_k\x18\x02 \x01(\x01R\x12coefficientWPerM2K\x12(\n" +
@@ -1263,7 +1338,13 @@ const file_calandria_v1_train_proto_rawDesc = "" +
 	"heatLossKw\x12!\n" +
 	"\rvent_kg_per_h\x18\x17 \x01(\x01R\n" +
 	"ventKgPerH\x12+\n" +
-	"\x12entrained_kg_per_h\x18\x18 \x01(\x01R\x0fentrainedKgPerH\"M\n" +
+	"\x12entrained_kg_per_h\x18\x18 \x01(\x01R\x0fentrainedKgPerH\x12$\n" +
+	"\x0eliquor_level_m\x18\x19 \x01(\x01R\fliquorLevelM\x12\"\n" +
+	"\rstatic_head_k\x18\x1a \x01(\x01R\vstaticHeadK\x124\n" +
+	"\x14circulation_kg_per_h\x18\x1b \x01(\x01H\x00R\x11circulationKgPerH\x88\x01\x01\x12-\n" +
+	"\x10liquor_heating_k\x18\x1c \x01(\x01H\x01R\x0eliquorHeatingK\x88\x01\x01B\x17\n" +
+	"\x15_circulation_kg_per_hB\x13\n" +
+	"\x11_liquor_heating_k\"M\n" +
 	"\aClosure\x12\x12\n" +
 	"\x04mass\x18\x01 \x01(\x01R\x04mass\x12\x16\n" +
 	"\x06solids\x18\x02 \x01(\x01R\x06solids\x12\x16\n" +
@@ -1376,6 +1457,7 @@ func file_calandria_v1_train_proto_init() {
 	file_calandria_v1_train_proto_msgTypes[1].OneofWrappers = []any{}
 	file_calandria_v1_train_proto_msgTypes[2].OneofWrappers = []any{}
 	file_calandria_v1_train_proto_msgTypes[3].OneofWrappers = []any{}
+	file_calandria_v1_train_proto_msgTypes[4].OneofWrappers = []any{}
 	file_calandria_v1_train_proto_msgTypes[7].OneofWrappers = []any{}
 	file_calandria_v1_train_proto_msgTypes[8].OneofWrappers = []any{}
 	type x struct{}
