@@ -163,6 +163,13 @@ func TestBadInput(t *testing.T) {
 		{"override of the method", "POST", state, "", []string{"X-HTTP-Method-Override", "GET", "Content-Type", "application/x-www-form-urlencoded"}, 405, "METHOD_NOT_ALLOWED", nil},
 		{"no such path", "GET", "/v2/nothing", "", nil, 404, "NOT_FOUND", []string{"GET / lists"}},
 		{"repeats the balance", "POST", solve, `{` + good + `,"evaporation_kg_per_h":750}`, nil, 400, "OVER_SPECIFIED", []string{"feed.flow_kg_per_h", "evaporation_kg_per_h"}},
+		{"level without density", "POST", solve, strings.Replace(`{`+good+`}`, `"coefficient_w_per_m2_k":2000`, `"coefficient_w_per_m2_k":2000,"liquor_level_m":2`, 1), nil, 400, "FIELD_INVALID", []string{"effect.liquor_level_m", "density_kg_per_m3"}},
+		{"level to find without density", "POST", solve, `{` + good + `,"find":["effect.liquor_level_m"]}`, nil, 400, "FIELD_INVALID", []string{"effect.liquor_level_m", "density_kg_per_m3"}},
+		{"volume without density", "POST", solve, strings.Replace(`{`+good+`}`, `"flow_kg_per_h":1000`, `"volume_flow_m3_per_h":1`, 1), nil, 400, "FIELD_INVALID", []string{"feed.volume_flow_m3_per_h"}},
+		{"two densities", "POST", solve, strings.Replace(`{`+good+`}`, `"rise_k":0`, `"rise_k":0,"density_kg_per_m3":1000,"density_polynomial":{"coefficients_kg_per_m3":[1000]}`, 1), nil, 400, "FIELD_INVALID", []string{"beside density_kg_per_m3"}},
+		{"level in millimetres", "POST", solve, strings.Replace(`{`+good+`}`, `"coefficient_w_per_m2_k":2000`, `"coefficient_w_per_m2_k":2000,"liquor_level_m":2500`, 1), nil, 400, "FIELD_INVALID", []string{"at most 100 m"}},
+		{"level and pump", "POST", solve, strings.Replace(strings.Replace(`{`+good+`}`, `"coefficient_w_per_m2_k":2000`, `"coefficient_w_per_m2_k":2000,"liquor_level_m":2,"circulation_kg_per_h":100000`, 1), `"rise_k":0`, `"rise_k":0,"density_kg_per_m3":1000`, 1), nil, 400, "FIELD_INVALID", []string{"effect.circulation_kg_per_h", "static head"}},
+		{"mass and volume of the feed", "POST", solve, strings.Replace(strings.Replace(`{`+good+`}`, `"flow_kg_per_h":1000`, `"flow_kg_per_h":1000,"volume_flow_m3_per_h":1`, 1), `"rise_k":0`, `"rise_k":0,"density_kg_per_m3":1000`, 1), nil, 400, "OVER_SPECIFIED", []string{"feed.flow_kg_per_h", "feed.volume_flow_m3_per_h"}},
 		{"sensitivity of what is no number", "POST", solve, `{` + good + `,"sensitivities_of":["effect.nothing"]}`, nil, 400, "FIELD_INVALID", []string{"sensitivities_of[0]", "effect.area_m2"}},
 		{"sensitivity of what is given", "POST", solve, `{` + good + `,"sensitivities_of":["feed.flow_kg_per_h"]}`, nil, 400, "FIELD_INVALID", []string{"feed.flow_kg_per_h", "solved for"}},
 		{"sensitivity twice", "POST", solve, `{` + good + `,"sensitivities_of":["effect.area_m2","effect.area_m2"]}`, nil, 400, "FIELD_INVALID", []string{"each once"}},
@@ -223,6 +230,14 @@ func TestAnswersAreAsDescribed(t *testing.T) {
 	valid := describedBy(t)
 	if err := valid("SolveEffectRequest", `{`+good+`}`); err != nil {
 		t.Errorf("a good request: %v", err)
+	}
+	for _, density := range []string{`"density_kg_per_m3":1000`, `"density_polynomial":{"coefficients_kg_per_m3":[1000,300]}`} {
+		if err := valid("SolveEffectRequest", `{"custom_liquor":{"rise_k":0,"specific_heat_kj_per_kg_k":4,`+density+`}}`); err != nil {
+			t.Errorf("a liquor with density: %v", err)
+		}
+	}
+	if err := valid("SolveEffectRequest", `{"custom_liquor":{"rise_k":0,"specific_heat_kj_per_kg_k":4,"density_kg_per_m3":1000,"density_polynomial":{"coefficients_kg_per_m3":[1]}}}`); err == nil {
+		t.Error("the description accepts two densities")
 	}
 	if err := valid("SolveEffectRequest", `{`+good+`,"economy":-1}`); err == nil {
 		t.Error("the description accepts a negative economy")

@@ -223,6 +223,9 @@ func (w *writer) message(m protoreflect.MessageDescriptor) {
 		for j := range o.Fields().Len() {
 			one = append(one, object{"required": []string{string(o.Fields().Get(j).Name())}})
 		}
+		if rules, ok := options[*validate.OneofRules](o.Options(), &descriptorpb.OneofOptions{}, validate.E_Oneof); !ok || !rules.GetRequired() {
+			one = append(one, object{"not": object{"anyOf": slices.Clone(one)}}) // or none of them
+		}
 		choices = append(choices, object{"oneOf": one})
 	}
 	if len(required) > 0 {
