@@ -120,8 +120,8 @@ func TestWorkedExamplesThroughEveryDoor(t *testing.T) {
 	if err := json.Unmarshal(text, &file); err != nil {
 		t.Fatal(err)
 	}
-	if len(file.Examples) != 10 {
-		t.Errorf("%d examples, want 10", len(file.Examples))
+	if len(file.Examples) != 12 {
+		t.Errorf("%d examples, want 12", len(file.Examples))
 	}
 	byGet := 0
 	for _, e := range file.Examples {

@@ -36,6 +36,7 @@ const (
 	FeedFlashes                        // the feed enters hotter than it boils
 	SmallDrivingForce                  // the area is very sensitive to any temperature
 	BoundaryJump                       // a state between two regions of the steam formulation
+	Crystallisation                    // solids above what dissolves
 )
 
 // Advisory is a remark on a result that stands.

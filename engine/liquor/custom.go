@@ -10,7 +10,7 @@ import (
 	"calandria.example/calandria/engine/quantity"
 )
 
-// Custom holds a caller's own figures. Exactly one of the three rises and one
+// Custom holds a caller's own figures. Exactly one of the five rises and one
 // of the two kinds of heat must be set.
 type Custom struct {
 	Source string // where the figures come from
@@ -18,6 +18,8 @@ type Custom struct {
 	RiseConstant   *float64      // K, the same everywhere
 	RisePolynomial []float64     // K, coefficients of rising powers of the solids fraction
 	Duhring        []DuhringLine // in rising order of solids
+	RiseTable      []RiseRow     // in rising order of solids
+	Solute         *Solute
 
 	SpecificHeat  []float64     // J/(kg K), coefficients of rising powers of the solids fraction
 	EnthalpyTable []EnthalpyRow // in rising order of solids
@@ -31,6 +33,24 @@ type DuhringLine struct {
 	Solids    float64 // kg/kg
 	Slope     float64
 	Intercept float64 // degC
+}
+
+// RiseRow holds the rises of one strength.
+type RiseRow struct {
+	Solids float64 // kg/kg
+	Points []RisePoint
+}
+
+// RisePoint is one reading.
+type RisePoint struct {
+	Water quantity.Temperature // K, boiling temperature of water, rising within a row
+	Rise  float64              // K
+}
+
+// Solute makes an ideal solution.
+type Solute struct {
+	MolarMass float64 // g/mol
+	Factor    float64 // particles that a molecule gives
 }
 
 // EnthalpyRow holds the enthalpies of one strength.
@@ -65,8 +85,18 @@ func New(c Custom) (*Liquor, error) {
 		l.rise = polynomialRise(trimmed(c.RisePolynomial))
 	case len(c.Duhring) > 0:
 		l.rise = newDuhring(c.Duhring, complain)
+	case len(c.RiseTable) > 0:
+		l.rise = newRiseTable(c.RiseTable, complain)
+	case c.Solute != nil:
+		if !(c.Solute.MolarMass >= 1 && c.Solute.MolarMass <= 1e7) {
+			complain("custom_liquor.solute.molar_mass_g_per_mol", number(c.Solute.MolarMass), "1 to 10000000 g/mol", "give the molar mass of what is dissolved")
+		}
+		if !(c.Solute.Factor > 0 && c.Solute.Factor <= 20) {
+			complain("custom_liquor.solute.van_t_hoff_factor", number(c.Solute.Factor), "above 0, at most 20", "give the particles that one molecule gives: 1 for sugar, 2 for common salt")
+		}
+		l.rise = solute{c.Solute.MolarMass, c.Solute.Factor}
 	default:
-		complain("custom_liquor", "without a boiling-point rise", "one of rise_k, rise_polynomial, duhring", "give rise_k = 0 if the liquor boils like water")
+		complain("custom_liquor", "without a boiling-point rise", "one of rise_k, rise_polynomial, duhring, rise_table, solute", "give rise_k = 0 if the liquor boils like water")
 	}
 	switch {
 	case len(c.SpecificHeat) > 0:
@@ -79,7 +109,7 @@ func New(c Custom) (*Liquor, error) {
 	}
 	if len(c.Density) > 0 {
 		checkFinite(c.Density, "custom_liquor.density_polynomial.coefficients_kg_per_m3", complain)
-		l.density = trimmed(c.Density)
+		l.dense = polynomialDensity(trimmed(c.Density))
 	}
 	if len(problems) > 0 {
 		return nil, errors.Join(problems...)

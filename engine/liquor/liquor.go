@@ -7,7 +7,6 @@ import (
 
 	"calandria.example/calandria/engine/evidence"
 	"calandria.example/calandria/engine/fault"
-	"calandria.example/calandria/engine/numeric"
 )
 
 // Liquor is one liquor with its figures. It is made by New, does not change
@@ -16,10 +15,18 @@ type Liquor struct {
 	source string
 	rise   riseModel
 	heat   heatModel
-	// density holds coefficients of rising powers of the solids fraction, in
-	// kg/m3; none for a liquor whose density is not known.
-	density []float64
+	dense  densityModel // nil for a liquor whose density is not known
+
+	id     string           // in the catalogue; "" for a caller's own
+	pure   bool             // without solids
+	models []evidence.Model // of the catalogue
 }
+
+// ID is the liquor's id in the catalogue, "" for a caller's own.
+func (l *Liquor) ID() string { return l.id }
+
+// Pure is true for water, which has no solids.
+func (l *Liquor) Pure() bool { return l.pure }
 
 // riseModel gives the boiling-point rise in K at solids fraction w and at the
 // boiling temperature of water tw in K, with its derivatives.
@@ -68,25 +75,25 @@ func (l *Liquor) CheckEnthalpy(w, t float64) ([]evidence.Advisory, error) {
 
 // Density returns the density in kg/m3 of liquor with solids fraction w at t in
 // K, and its derivatives by w and by t. ok is false if it is not known.
-func (l *Liquor) Density(w, _ float64) (rho, byW, byT float64, ok bool) {
-	if len(l.density) == 0 {
+func (l *Liquor) Density(w, t float64) (rho, byW, byT float64, ok bool) {
+	if l.dense == nil {
 		return 0, 0, 0, false
 	}
-	rho, byW = numeric.Polynomial(l.density, w)
-	return rho, byW, 0, true
+	rho, byW, byT = l.dense.at(w, t)
+	return rho, byW, byT, true
 }
 
 // HasDensity tells whether the density is known.
-func (l *Liquor) HasDensity() bool { return len(l.density) > 0 }
+func (l *Liquor) HasDensity() bool { return l.dense != nil }
 
 // DensityDependsOnSolids is false for a liquor with one density.
-func (l *Liquor) DensityDependsOnSolids() bool { return len(l.density) > 1 }
+func (l *Liquor) DensityDependsOnSolids() bool { return l.dense != nil && l.dense.dependsOnSolids() }
 
 // CheckDensity returns a *fault.Range where the density, at solids fraction w,
 // can not be that of a liquor.
 func (l *Liquor) CheckDensity(w float64) error {
 	const lightest, heaviest = 200, 5000 // kg/m3
-	if rho, _, _, ok := l.Density(w, 0); ok && !(rho >= lightest && rho <= heaviest) {
+	if rho, _, _, ok := l.Density(w, 300); ok && l.id == "" && !(rho >= lightest && rho <= heaviest) {
 		return &fault.Range{Quantity: "density of the custom liquor", Unit: "kg/m3", Source: fmt.Sprintf("custom_liquor.density_polynomial at solids %.4g kg/kg", w), Value: rho, Min: lightest, Max: heaviest}
 	}
 	return nil
@@ -94,6 +101,9 @@ func (l *Liquor) CheckDensity(w float64) error {
 
 // Models returns what the liquor's figures rest on.
 func (l *Liquor) Models() []evidence.Model {
+	if l.id != "" {
+		return append([]evidence.Model(nil), l.models...)
+	}
 	models := []evidence.Model{l.rise.model(), l.heat.model()}
 	if l.HasDensity() {
 		models = append(models, evidence.Model{ID: "custom-density", ValidRange: "where the caller's figure holds; the same at every temperature", Inside: true})

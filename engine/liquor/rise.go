@@ -2,6 +2,7 @@ package liquor
 
 import (
 	"fmt"
+	"math"
 
 	"calandria.example/calandria/engine/evidence"
 	"calandria.example/calandria/engine/numeric"
@@ -98,4 +99,79 @@ func (r *duhringRise) model() evidence.Model {
 		ID: "custom-rise-duhring", Inside: true,
 		ValidRange: fmt.Sprintf("solids %.4g to %.4g kg/kg", r.slope.First(), r.slope.Last()),
 	}
+}
+
+// riseTable interpolates a caller's rises as an enthalpy table its enthalpies;
+// beyond its ends it holds the nearest one.
+type riseTable struct {
+	surface            enthalpyTable
+	coldest, hottest   float64 // K, boiling temperatures of water that every row reaches
+	weakest, strongest float64 // kg/kg
+}
+
+func newRiseTable(rows []RiseRow, complain complaint) riseModel {
+	r := &riseTable{coldest: -math.MaxFloat64, hottest: math.MaxFloat64}
+	for i, row := range rows {
+		field := fmt.Sprintf("custom_liquor.rise_table.rows[%d]", i)
+		if !(row.Solids >= 0 && row.Solids <= 1) {
+			complain(field+".solids_fraction", number(row.Solids), "0 to 1 kg/kg", "give a fraction, not a percentage")
+		}
+		if len(row.Points) == 0 {
+			complain(field+".points", "empty", "at least one point", "give one reading")
+			continue
+		}
+		t, rise := make([]float64, len(row.Points)), make([]float64, len(row.Points))
+		for j, point := range row.Points {
+			t[j], rise[j] = float64(point.Water), point.Rise
+			if !(point.Rise >= 0 && point.Rise <= largestRise) {
+				complain(fmt.Sprintf("%s.points[%d].rise_k", field, j), number(point.Rise), "0 to 200 K", "give the rise as a difference in K")
+			}
+		}
+		if j, ok := numeric.Rising(t); !ok {
+			complain(fmt.Sprintf("%s.points[%d].water_boiling_temperature_c", field, j), number(row.Points[j].Water.Celsius()), "above that of the point before", "put the points in rising order of temperature, each once")
+		}
+		r.surface.solids = append(r.surface.solids, row.Solids)
+		r.surface.rows = append(r.surface.rows, numeric.NewCurve(t, rise))
+		r.coldest, r.hottest = max(r.coldest, t[0]), min(r.hottest, t[len(t)-1])
+	}
+	if i, ok := numeric.Rising(r.surface.solids); !ok {
+		complain(fmt.Sprintf("custom_liquor.rise_table.rows[%d].solids_fraction", i), number(r.surface.solids[i]), "above that of the row before", "put the rows in rising order of solids, each strength once")
+	}
+	if n := len(r.surface.solids); n > 0 {
+		r.weakest, r.strongest = r.surface.solids[0], r.surface.solids[n-1]
+	}
+	if r.hottest < r.coldest { // rows of single points, or apart: each holds its own
+		r.coldest, r.hottest = -math.MaxFloat64, math.MaxFloat64
+	}
+	return r
+}
+
+func (r *riseTable) at(w, tw float64) (rise, byW, byTw float64) {
+	heldW, heldT := min(max(w, r.weakest), r.strongest), min(max(tw, r.coldest), r.hottest)
+	rise, byW, byTw = r.surface.at(heldW, heldT)
+	if heldW != w {
+		byW = 0
+	}
+	if heldT != tw {
+		byTw = 0
+	}
+	return rise, byW, byTw
+}
+
+func (r *riseTable) dependsOnSolids() bool { return r.surface.dependsOnSolids() }
+
+func (r *riseTable) check(w float64) []evidence.Advisory {
+	const slack = 1e-9
+	if w >= r.weakest-slack && w <= r.strongest+slack {
+		return nil
+	}
+	return []evidence.Advisory{{
+		Code: evidence.HeldBeyondStrength, Warning: true, Field: "product.solids_fraction",
+		Message: fmt.Sprintf("The rises are for solids of %.4g to %.4g kg/kg; at %.4g kg/kg the nearest row was used.", r.weakest, r.strongest, w),
+		Limit:   fmt.Sprintf("%.4g to %.4g kg/kg", r.weakest, r.strongest),
+	}}
+}
+
+func (r *riseTable) model() evidence.Model {
+	return evidence.Model{ID: "custom-rise-table", Inside: true, ValidRange: fmt.Sprintf("solids %.4g to %.4g kg/kg", r.weakest, r.strongest)}
 }

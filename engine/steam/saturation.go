@@ -156,6 +156,19 @@ func LiquidEnthalpy(t quantity.Temperature) (h, byT float64, err error) {
 	return h, cp + byP*slope, nil
 }
 
+// LiquidDensity returns the density in kg/m3 of saturated liquid at t, 273.15 K
+// to 623.15 K, by region 1, and its derivative along the saturation line.
+func LiquidDensity(t quantity.Temperature) (rho, byT float64, err error) {
+	if !(t >= coldest && t <= regionsEnd) {
+		return 0, 0, outside("temperature", "K", float64(t), coldest, regionsEnd)
+	}
+	p, slope := equation30(float64(t))
+	byPi, byPiPi, _, byPiTau := region1Response(p, float64(t))
+	v := gasConstant * float64(t) / p * byPi
+	vByT, vByP := gasConstant/p*(byPi-byPiTau), gasConstant*float64(t)/(p*p)*byPiPi
+	return 1 / v, -(vByT + vByP*slope) / (v * v), nil
+}
+
 // VapourEnthalpy returns the enthalpy in J/kg of vapour at p and t by region
 // 2, 273.15 K to 1073.15 K, and its derivatives by p and t. For the sake of
 // solvers it goes on smoothly a little below the condensing temperature.

@@ -252,6 +252,12 @@ func TestSolverFunctions(t *testing.T) {
 		if errors.Join(err, errAbove, errBelow) != nil || math.Abs(h/liquid.Enthalpy-1) > 1e-12 || math.Abs(byT-(above-below)/(2*d)) > 1e-6*byT {
 			t.Errorf("%g K: liquid %g, slope %g by differences %g", temperature, h, byT, (above-below)/(2*d))
 		}
+		rho, rhoByT, err := LiquidDensity(quantity.Temperature(temperature))
+		rhoAbove, _, errAbove := LiquidDensity(quantity.Temperature(temperature + d))
+		rhoBelow, _, errBelow := LiquidDensity(quantity.Temperature(temperature - d))
+		if errors.Join(err, errAbove, errBelow) != nil || math.Abs(rho*liquid.Volume-1) > 1e-12 || math.Abs(rhoByT-(rhoAbove-rhoBelow)/(2*d)) > 1e-6*math.Abs(rhoByT)+1e-7 {
+			t.Errorf("%g K: density %g, slope %g by differences %g", temperature, rho, rhoByT, (rhoAbove-rhoBelow)/(2*d))
+		}
 		h, byP, byT, err := VapourEnthalpy(vapour.Pressure, vapour.Temperature)
 		near := func(a, b float64) bool { return math.Abs(a-b) <= 1e-11*math.Abs(b) }
 		if err != nil || !near(h, vapour.Enthalpy) || !near(byT, vapour.Cp) || !near(byP, vapour.EnthalpyByPressure()) {

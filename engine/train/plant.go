@@ -132,6 +132,9 @@ func newQuestion(p Plant) (*question, error) {
 	if len(problems) > 0 {
 		return nil, errors.Join(problems...)
 	}
+	if p.Liquor.Pure() && !q.fixed[FeedSolids] && !q.fixed[ProductSolids] && !q.fixed[SolidsOut] {
+		q.fixed[FeedSolids], q.byDefault[FeedSolids], q.value[FeedSolids] = true, true, 0
+	}
 	q.fit(p.Find)
 	for n := range numbers {
 		value, ok := defaultOf(n)

@@ -13,7 +13,7 @@ import (
 
 // EffectRequest makes the engine's question from a request.
 func EffectRequest(m *calandriav1.SolveEffectRequest) (train.Plant, error) {
-	l, err := CustomLiquor(m.GetCustomLiquor())
+	l, err := Liquor(m.GetLiquor(), m.GetCustomLiquor())
 	if err != nil {
 		return train.Plant{}, err
 	}

@@ -16,6 +16,7 @@ var codes = map[evidence.Code]calandriav1.AdvisoryCode{
 	evidence.FeedFlashes:        calandriav1.AdvisoryCode_ADVISORY_CODE_FEED_FLASHES,
 	evidence.SmallDrivingForce:  calandriav1.AdvisoryCode_ADVISORY_CODE_SMALL_DRIVING_FORCE,
 	evidence.BoundaryJump:       calandriav1.AdvisoryCode_ADVISORY_CODE_BOUNDARY_JUMP,
+	evidence.Crystallisation:    calandriav1.AdvisoryCode_ADVISORY_CODE_CRYSTALLISATION,
 }
 
 var grades = map[evidence.Grade]calandriav1.Grade{

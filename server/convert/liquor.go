@@ -1,10 +1,29 @@
 package convert
 
 import (
+	"strings"
+
+	"calandria.example/calandria/engine/fault"
 	"calandria.example/calandria/engine/liquor"
 	"calandria.example/calandria/engine/quantity"
 	calandriav1 "calandria.example/calandria/proto/calandria/v1"
 )
+
+// Liquor makes the engine's liquor: one of the catalogue, or a caller's own.
+func Liquor(named *calandriav1.Liquor, own *calandriav1.CustomLiquor) (*liquor.Liquor, error) {
+	switch {
+	case named != nil && own != nil:
+		return nil, &fault.Invalid{Field: "liquor", Value: "given beside custom_liquor", Limit: "one of the two", WayOut: "drop one of them"}
+	case named != nil:
+		return liquor.ByID(named.GetId())
+	case own != nil:
+		return CustomLiquor(own)
+	}
+	return nil, &fault.Invalid{
+		Field: "liquor", Value: "left out", Limit: "liquor or custom_liquor",
+		WayOut: "name a liquor of the catalogue (" + strings.Join(liquor.IDs(), ", ") + "), or describe one in custom_liquor",
+	}
+}
 
 // CustomLiquor makes the engine's liquor from a caller's own figures.
 func CustomLiquor(m *calandriav1.CustomLiquor) (*liquor.Liquor, error) {
@@ -21,6 +40,16 @@ func CustomLiquor(m *calandriav1.CustomLiquor) (*liquor.Liquor, error) {
 				Solids: line.GetSolidsFraction(), Slope: line.GetSlope(), Intercept: line.GetInterceptC(),
 			})
 		}
+	case *calandriav1.CustomLiquor_RiseTable:
+		for _, row := range rise.RiseTable.GetRows() {
+			points := make([]liquor.RisePoint, len(row.GetPoints()))
+			for i, point := range row.GetPoints() {
+				points[i] = liquor.RisePoint{Water: quantity.Celsius(point.GetWaterBoilingTemperatureC()), Rise: point.GetRiseK()}
+			}
+			c.RiseTable = append(c.RiseTable, liquor.RiseRow{Solids: row.GetSolidsFraction(), Points: points})
+		}
+	case *calandriav1.CustomLiquor_Solute:
+		c.Solute = &liquor.Solute{MolarMass: rise.Solute.GetMolarMassGPerMol(), Factor: rise.Solute.GetVanTHoffFactor()}
 	}
 	switch heat := m.GetHeat().(type) {
 	case *calandriav1.CustomLiquor_SpecificHeatKjPerKgK:

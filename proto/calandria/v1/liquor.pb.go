@@ -22,6 +22,52 @@ const (
 	_ = protoimpl.EnforceVersion(protoimpl.MaxVersion - 20)
 )
 
+// Liquor names a liquor of the catalogue: water, sucrose or sodium-hydroxide.
+type Liquor struct {
+	state protoimpl.MessageState `protogen:"open.v1"`
+	// Its id.
+	Id            string `protobuf:"bytes,1,opt,name=id,proto3" json:"id,omitempty"`
+	unknownFields protoimpl.UnknownFields
+	sizeCache     protoimpl.SizeCache
+}
+
+func (x *Liquor) Reset() {
+	*x = Liquor{}
+	mi := &file_calandria_v1_liquor_proto_msgTypes[0]
+	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+	ms.StoreMessageInfo(mi)
+}
+
+func (x *Liquor) String() string {
+	return protoimpl.X.MessageStringOf(x)
+}
+
+func (*Liquor) ProtoMessage() {}
+
+func (x *Liquor) ProtoReflect() protoreflect.Message {
+	mi := &file_calandria_v1_liquor_proto_msgTypes[0]
+	if x != nil {
+		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+		if ms.LoadMessageInfo() == nil {
+			ms.StoreMessageInfo(mi)
+		}
+		return ms
+	}
+	return mi.MessageOf(x)
+}
+
+// Deprecated: Use Liquor.ProtoReflect.Descriptor instead.
+func (*Liquor) Descriptor() ([]byte, []int) {
+	return file_calandria_v1_liquor_proto_rawDescGZIP(), []int{0}
+}
+
+func (x *Liquor) GetId() string {
+	if x != nil {
+		return x.Id
+	}
+	return ""
+}
+
 // CustomLiquor describes a liquor by the caller's own figures.
 type CustomLiquor struct {
 	state protoimpl.MessageState `protogen:"open.v1"`
@@ -34,6 +80,8 @@ type CustomLiquor struct {
 	//	*CustomLiquor_RiseK
 	//	*CustomLiquor_RisePolynomial
 	//	*CustomLiquor_Duhring
+	//	*CustomLiquor_RiseTable
+	//	*CustomLiquor_Solute
 	Rise isCustomLiquor_Rise `protobuf_oneof:"rise"`
 	// How the liquor holds heat.
 	//
@@ -56,7 +104,7 @@ type CustomLiquor struct {
 
 func (x *CustomLiquor) Reset() {
 	*x = CustomLiquor{}
-	mi := &file_calandria_v1_liquor_proto_msgTypes[0]
+	mi := &file_calandria_v1_liquor_proto_msgTypes[1]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -68,7 +116,7 @@ func (x *CustomLiquor) String() string {
 func (*CustomLiquor) ProtoMessage() {}
 
 func (x *CustomLiquor) ProtoReflect() protoreflect.Message {
-	mi := &file_calandria_v1_liquor_proto_msgTypes[0]
+	mi := &file_calandria_v1_liquor_proto_msgTypes[1]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -81,7 +129,7 @@ func (x *CustomLiquor) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use CustomLiquor.ProtoReflect.Descriptor instead.
 func (*CustomLiquor) Descriptor() ([]byte, []int) {
-	return file_calandria_v1_liquor_proto_rawDescGZIP(), []int{0}
+	return file_calandria_v1_liquor_proto_rawDescGZIP(), []int{1}
 }
 
 func (x *CustomLiquor) GetSource() string {
@@ -120,6 +168,24 @@ func (x *CustomLiquor) GetDuhring() *DuhringLines {
 	if x != nil {
 		if x, ok := x.Rise.(*CustomLiquor_Duhring); ok {
 			return x.Duhring
+		}
+	}
+	return nil
+}
+
+func (x *CustomLiquor) GetRiseTable() *RiseTable {
+	if x != nil {
+		if x, ok := x.Rise.(*CustomLiquor_RiseTable); ok {
+			return x.RiseTable
+		}
+	}
+	return nil
+}
+
+func (x *CustomLiquor) GetSolute() *Solute {
+	if x != nil {
+		if x, ok := x.Rise.(*CustomLiquor_Solute); ok {
+			return x.Solute
 		}
 	}
 	return nil
@@ -203,11 +269,25 @@ type CustomLiquor_Duhring struct {
 	Duhring *DuhringLines `protobuf:"bytes,4,opt,name=duhring,proto3,oneof"`
 }
 
+type CustomLiquor_RiseTable struct {
+	// Rises as a table gives them.
+	RiseTable *RiseTable `protobuf:"bytes,10,opt,name=rise_table,json=riseTable,proto3,oneof"`
+}
+
+type CustomLiquor_Solute struct {
+	// What is dissolved, as an ideal solution.
+	Solute *Solute `protobuf:"bytes,11,opt,name=solute,proto3,oneof"`
+}
+
 func (*CustomLiquor_RiseK) isCustomLiquor_Rise() {}
 
 func (*CustomLiquor_RisePolynomial) isCustomLiquor_Rise() {}
 
 func (*CustomLiquor_Duhring) isCustomLiquor_Rise() {}
+
+func (*CustomLiquor_RiseTable) isCustomLiquor_Rise() {}
+
+func (*CustomLiquor_Solute) isCustomLiquor_Rise() {}
 
 type isCustomLiquor_Heat interface {
 	isCustomLiquor_Heat()
@@ -264,7 +344,7 @@ type DensityPolynomial struct {
 
 func (x *DensityPolynomial) Reset() {
 	*x = DensityPolynomial{}
-	mi := &file_calandria_v1_liquor_proto_msgTypes[1]
+	mi := &file_calandria_v1_liquor_proto_msgTypes[2]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -276,7 +356,7 @@ func (x *DensityPolynomial) String() string {
 func (*DensityPolynomial) ProtoMessage() {}
 
 func (x *DensityPolynomial) ProtoReflect() protoreflect.Message {
-	mi := &file_calandria_v1_liquor_proto_msgTypes[1]
+	mi := &file_calandria_v1_liquor_proto_msgTypes[2]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -289,7 +369,7 @@ func (x *DensityPolynomial) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use DensityPolynomial.ProtoReflect.Descriptor instead.
 func (*DensityPolynomial) Descriptor() ([]byte, []int) {
-	return file_calandria_v1_liquor_proto_rawDescGZIP(), []int{1}
+	return file_calandria_v1_liquor_proto_rawDescGZIP(), []int{2}
 }
 
 func (x *DensityPolynomial) GetCoefficientsKgPerM3() []float64 {
@@ -310,7 +390,7 @@ type RisePolynomial struct {
 
 func (x *RisePolynomial) Reset() {
 	*x = RisePolynomial{}
-	mi := &file_calandria_v1_liquor_proto_msgTypes[2]
+	mi := &file_calandria_v1_liquor_proto_msgTypes[3]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -322,7 +402,7 @@ func (x *RisePolynomial) String() string {
 func (*RisePolynomial) ProtoMessage() {}
 
 func (x *RisePolynomial) ProtoReflect() protoreflect.Message {
-	mi := &file_calandria_v1_liquor_proto_msgTypes[2]
+	mi := &file_calandria_v1_liquor_proto_msgTypes[3]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -335,7 +415,7 @@ func (x *RisePolynomial) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use RisePolynomial.ProtoReflect.Descriptor instead.
 func (*RisePolynomial) Descriptor() ([]byte, []int) {
-	return file_calandria_v1_liquor_proto_rawDescGZIP(), []int{2}
+	return file_calandria_v1_liquor_proto_rawDescGZIP(), []int{3}
 }
 
 func (x *RisePolynomial) GetCoefficientsK() []float64 {
@@ -357,7 +437,7 @@ type SpecificHeatPolynomial struct {
 
 func (x *SpecificHeatPolynomial) Reset() {
 	*x = SpecificHeatPolynomial{}
-	mi := &file_calandria_v1_liquor_proto_msgTypes[3]
+	mi := &file_calandria_v1_liquor_proto_msgTypes[4]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -369,7 +449,7 @@ func (x *SpecificHeatPolynomial) String() string {
 func (*SpecificHeatPolynomial) ProtoMessage() {}
 
 func (x *SpecificHeatPolynomial) ProtoReflect() protoreflect.Message {
-	mi := &file_calandria_v1_liquor_proto_msgTypes[3]
+	mi := &file_calandria_v1_liquor_proto_msgTypes[4]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -382,7 +462,7 @@ func (x *SpecificHeatPolynomial) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use SpecificHeatPolynomial.ProtoReflect.Descriptor instead.
 func (*SpecificHeatPolynomial) Descriptor() ([]byte, []int) {
-	return file_calandria_v1_liquor_proto_rawDescGZIP(), []int{3}
+	return file_calandria_v1_liquor_proto_rawDescGZIP(), []int{4}
 }
 
 func (x *SpecificHeatPolynomial) GetCoefficientsKjPerKgK() []float64 {
@@ -405,7 +485,7 @@ type DuhringLines struct {
 
 func (x *DuhringLines) Reset() {
 	*x = DuhringLines{}
-	mi := &file_calandria_v1_liquor_proto_msgTypes[4]
+	mi := &file_calandria_v1_liquor_proto_msgTypes[5]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -417,7 +497,7 @@ func (x *DuhringLines) String() string {
 func (*DuhringLines) ProtoMessage() {}
 
 func (x *DuhringLines) ProtoReflect() protoreflect.Message {
-	mi := &file_calandria_v1_liquor_proto_msgTypes[4]
+	mi := &file_calandria_v1_liquor_proto_msgTypes[5]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -430,7 +510,7 @@ func (x *DuhringLines) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use DuhringLines.ProtoReflect.Descriptor instead.
 func (*DuhringLines) Descriptor() ([]byte, []int) {
-	return file_calandria_v1_liquor_proto_rawDescGZIP(), []int{4}
+	return file_calandria_v1_liquor_proto_rawDescGZIP(), []int{5}
 }
 
 func (x *DuhringLines) GetLines() []*DuhringLine {
@@ -455,7 +535,7 @@ type DuhringLine struct {
 
 func (x *DuhringLine) Reset() {
 	*x = DuhringLine{}
-	mi := &file_calandria_v1_liquor_proto_msgTypes[5]
+	mi := &file_calandria_v1_liquor_proto_msgTypes[6]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -467,7 +547,7 @@ func (x *DuhringLine) String() string {
 func (*DuhringLine) ProtoMessage() {}
 
 func (x *DuhringLine) ProtoReflect() protoreflect.Message {
-	mi := &file_calandria_v1_liquor_proto_msgTypes[5]
+	mi := &file_calandria_v1_liquor_proto_msgTypes[6]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -480,7 +560,7 @@ func (x *DuhringLine) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use DuhringLine.ProtoReflect.Descriptor instead.
 func (*DuhringLine) Descriptor() ([]byte, []int) {
-	return file_calandria_v1_liquor_proto_rawDescGZIP(), []int{5}
+	return file_calandria_v1_liquor_proto_rawDescGZIP(), []int{6}
 }
 
 func (x *DuhringLine) GetSolidsFraction() float64 {
@@ -517,7 +597,7 @@ type EnthalpyTable struct {
 
 func (x *EnthalpyTable) Reset() {
 	*x = EnthalpyTable{}
-	mi := &file_calandria_v1_liquor_proto_msgTypes[6]
+	mi := &file_calandria_v1_liquor_proto_msgTypes[7]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -529,7 +609,7 @@ func (x *EnthalpyTable) String() string {
 func (*EnthalpyTable) ProtoMessage() {}
 
 func (x *EnthalpyTable) ProtoReflect() protoreflect.Message {
-	mi := &file_calandria_v1_liquor_proto_msgTypes[6]
+	mi := &file_calandria_v1_liquor_proto_msgTypes[7]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -542,7 +622,7 @@ func (x *EnthalpyTable) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use EnthalpyTable.ProtoReflect.Descriptor instead.
 func (*EnthalpyTable) Descriptor() ([]byte, []int) {
-	return file_calandria_v1_liquor_proto_rawDescGZIP(), []int{6}
+	return file_calandria_v1_liquor_proto_rawDescGZIP(), []int{7}
 }
 
 func (x *EnthalpyTable) GetRows() []*EnthalpyRow {
@@ -565,7 +645,7 @@ type EnthalpyRow struct {
 
 func (x *EnthalpyRow) Reset() {
 	*x = EnthalpyRow{}
-	mi := &file_calandria_v1_liquor_proto_msgTypes[7]
+	mi := &file_calandria_v1_liquor_proto_msgTypes[8]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -577,7 +657,7 @@ func (x *EnthalpyRow) String() string {
 func (*EnthalpyRow) ProtoMessage() {}
 
 func (x *EnthalpyRow) ProtoReflect() protoreflect.Message {
-	mi := &file_calandria_v1_liquor_proto_msgTypes[7]
+	mi := &file_calandria_v1_liquor_proto_msgTypes[8]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -590,7 +670,7 @@ func (x *EnthalpyRow) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use EnthalpyRow.ProtoReflect.Descriptor instead.
 func (*EnthalpyRow) Descriptor() ([]byte, []int) {
-	return file_calandria_v1_liquor_proto_rawDescGZIP(), []int{7}
+	return file_calandria_v1_liquor_proto_rawDescGZIP(), []int{8}
 }
 
 func (x *EnthalpyRow) GetSolidsFraction() float64 {
@@ -621,7 +701,7 @@ type EnthalpyPoint struct {
 
 func (x *EnthalpyPoint) Reset() {
 	*x = EnthalpyPoint{}
-	mi := &file_calandria_v1_liquor_proto_msgTypes[8]
+	mi := &file_calandria_v1_liquor_proto_msgTypes[9]
 	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 	ms.StoreMessageInfo(mi)
 }
@@ -633,7 +713,7 @@ func (x *EnthalpyPoint) String() string {
 func (*EnthalpyPoint) ProtoMessage() {}
 
 func (x *EnthalpyPoint) ProtoReflect() protoreflect.Message {
-	mi := &file_calandria_v1_liquor_proto_msgTypes[8]
+	mi := &file_calandria_v1_liquor_proto_msgTypes[9]
 	if x != nil {
 		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
 		if ms.LoadMessageInfo() == nil {
@@ -646,7 +726,7 @@ func (x *EnthalpyPoint) ProtoReflect() protoreflect.Message {
 
 // Deprecated: Use EnthalpyPoint.ProtoReflect.Descriptor instead.
 func (*EnthalpyPoint) Descriptor() ([]byte, []int) {
-	return file_calandria_v1_liquor_proto_rawDescGZIP(), []int{8}
+	return file_calandria_v1_liquor_proto_rawDescGZIP(), []int{9}
 }
 
 func (x *EnthalpyPoint) GetTemperatureC() float64 {
@@ -663,16 +743,235 @@ func (x *EnthalpyPoint) GetEnthalpyKjPerKg() float64 {
 	return 0
 }
 
+// RiseTable gives the boiling-point rise against solids and the boiling
+// temperature of water, one row a strength. Beyond its ends the nearest value
+// holds.
+type RiseTable struct {
+	state protoimpl.MessageState `protogen:"open.v1"`
+	// The rows, in rising order of solids.
+	Rows          []*RiseRow `protobuf:"bytes,1,rep,name=rows,proto3" json:"rows,omitempty"`
+	unknownFields protoimpl.UnknownFields
+	sizeCache     protoimpl.SizeCache
+}
+
+func (x *RiseTable) Reset() {
+	*x = RiseTable{}
+	mi := &file_calandria_v1_liquor_proto_msgTypes[10]
+	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+	ms.StoreMessageInfo(mi)
+}
+
+func (x *RiseTable) String() string {
+	return protoimpl.X.MessageStringOf(x)
+}
+
+func (*RiseTable) ProtoMessage() {}
+
+func (x *RiseTable) ProtoReflect() protoreflect.Message {
+	mi := &file_calandria_v1_liquor_proto_msgTypes[10]
+	if x != nil {
+		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+		if ms.LoadMessageInfo() == nil {
+			ms.StoreMessageInfo(mi)
+		}
+		return ms
+	}
+	return mi.MessageOf(x)
+}
+
+// Deprecated: Use RiseTable.ProtoReflect.Descriptor instead.
+func (*RiseTable) Descriptor() ([]byte, []int) {
+	return file_calandria_v1_liquor_proto_rawDescGZIP(), []int{10}
+}
+
+func (x *RiseTable) GetRows() []*RiseRow {
+	if x != nil {
+		return x.Rows
+	}
+	return nil
+}
+
+// RiseRow holds the rises of one strength.
+type RiseRow struct {
+	state protoimpl.MessageState `protogen:"open.v1"`
+	// Strength.
+	SolidsFraction *float64 `protobuf:"fixed64,1,opt,name=solids_fraction,json=solidsFraction,proto3,oneof" json:"solids_fraction,omitempty"`
+	// The points, in rising order of temperature.
+	Points        []*RisePoint `protobuf:"bytes,2,rep,name=points,proto3" json:"points,omitempty"`
+	unknownFields protoimpl.UnknownFields
+	sizeCache     protoimpl.SizeCache
+}
+
+func (x *RiseRow) Reset() {
+	*x = RiseRow{}
+	mi := &file_calandria_v1_liquor_proto_msgTypes[11]
+	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+	ms.StoreMessageInfo(mi)
+}
+
+func (x *RiseRow) String() string {
+	return protoimpl.X.MessageStringOf(x)
+}
+
+func (*RiseRow) ProtoMessage() {}
+
+func (x *RiseRow) ProtoReflect() protoreflect.Message {
+	mi := &file_calandria_v1_liquor_proto_msgTypes[11]
+	if x != nil {
+		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+		if ms.LoadMessageInfo() == nil {
+			ms.StoreMessageInfo(mi)
+		}
+		return ms
+	}
+	return mi.MessageOf(x)
+}
+
+// Deprecated: Use RiseRow.ProtoReflect.Descriptor instead.
+func (*RiseRow) Descriptor() ([]byte, []int) {
+	return file_calandria_v1_liquor_proto_rawDescGZIP(), []int{11}
+}
+
+func (x *RiseRow) GetSolidsFraction() float64 {
+	if x != nil && x.SolidsFraction != nil {
+		return *x.SolidsFraction
+	}
+	return 0
+}
+
+func (x *RiseRow) GetPoints() []*RisePoint {
+	if x != nil {
+		return x.Points
+	}
+	return nil
+}
+
+// RisePoint is one reading.
+type RisePoint struct {
+	state protoimpl.MessageState `protogen:"open.v1"`
+	// Boiling temperature of water at the same pressure.
+	WaterBoilingTemperatureC *float64 `protobuf:"fixed64,1,opt,name=water_boiling_temperature_c,json=waterBoilingTemperatureC,proto3,oneof" json:"water_boiling_temperature_c,omitempty"`
+	// How much hotter the liquor boils.
+	RiseK         *float64 `protobuf:"fixed64,2,opt,name=rise_k,json=riseK,proto3,oneof" json:"rise_k,omitempty"`
+	unknownFields protoimpl.UnknownFields
+	sizeCache     protoimpl.SizeCache
+}
+
+func (x *RisePoint) Reset() {
+	*x = RisePoint{}
+	mi := &file_calandria_v1_liquor_proto_msgTypes[12]
+	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+	ms.StoreMessageInfo(mi)
+}
+
+func (x *RisePoint) String() string {
+	return protoimpl.X.MessageStringOf(x)
+}
+
+func (*RisePoint) ProtoMessage() {}
+
+func (x *RisePoint) ProtoReflect() protoreflect.Message {
+	mi := &file_calandria_v1_liquor_proto_msgTypes[12]
+	if x != nil {
+		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+		if ms.LoadMessageInfo() == nil {
+			ms.StoreMessageInfo(mi)
+		}
+		return ms
+	}
+	return mi.MessageOf(x)
+}
+
+// Deprecated: Use RisePoint.ProtoReflect.Descriptor instead.
+func (*RisePoint) Descriptor() ([]byte, []int) {
+	return file_calandria_v1_liquor_proto_rawDescGZIP(), []int{12}
+}
+
+func (x *RisePoint) GetWaterBoilingTemperatureC() float64 {
+	if x != nil && x.WaterBoilingTemperatureC != nil {
+		return *x.WaterBoilingTemperatureC
+	}
+	return 0
+}
+
+func (x *RisePoint) GetRiseK() float64 {
+	if x != nil && x.RiseK != nil {
+		return *x.RiseK
+	}
+	return 0
+}
+
+// Solute is what is dissolved, as an ideal solution of it behaves.
+type Solute struct {
+	state protoimpl.MessageState `protogen:"open.v1"`
+	// Molar mass, in g/mol.
+	MolarMassGPerMol *float64 `protobuf:"fixed64,1,opt,name=molar_mass_g_per_mol,json=molarMassGPerMol,proto3,oneof" json:"molar_mass_g_per_mol,omitempty"`
+	// Particles that one molecule gives: 1 for sugar, 2 for common salt.
+	VanTHoffFactor *float64 `protobuf:"fixed64,2,opt,name=van_t_hoff_factor,json=vanTHoffFactor,proto3,oneof" json:"van_t_hoff_factor,omitempty"`
+	unknownFields  protoimpl.UnknownFields
+	sizeCache      protoimpl.SizeCache
+}
+
+func (x *Solute) Reset() {
+	*x = Solute{}
+	mi := &file_calandria_v1_liquor_proto_msgTypes[13]
+	ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+	ms.StoreMessageInfo(mi)
+}
+
+func (x *Solute) String() string {
+	return protoimpl.X.MessageStringOf(x)
+}
+
+func (*Solute) ProtoMessage() {}
+
+func (x *Solute) ProtoReflect() protoreflect.Message {
+	mi := &file_calandria_v1_liquor_proto_msgTypes[13]
+	if x != nil {
+		ms := protoimpl.X.MessageStateOf(protoimpl.Pointer(x))
+		if ms.LoadMessageInfo() == nil {
+			ms.StoreMessageInfo(mi)
+		}
+		return ms
+	}
+	return mi.MessageOf(x)
+}
+
+// Deprecated: Use Solute.ProtoReflect.Descriptor instead.
+func (*Solute) Descriptor() ([]byte, []int) {
+	return file_calandria_v1_liquor_proto_rawDescGZIP(), []int{13}
+}
+
+func (x *Solute) GetMolarMassGPerMol() float64 {
+	if x != nil && x.MolarMassGPerMol != nil {
+		return *x.MolarMassGPerMol
+	}
+	return 0
+}
+
+func (x *Solute) GetVanTHoffFactor() float64 {
+	if x != nil && x.VanTHoffFactor != nil {
+		return *x.VanTHoffFactor
+	}
+	return 0
+}
+
 var File_calandria_v1_liquor_proto protoreflect.FileDescriptor
 
 const file_calandria_v1_liquor_proto_rawDesc = "" +
 	"\n" +
-	"\x19calandria/v1/liquor.proto\x12\fcalandria.v1\x1a\x1bbuf/validate/validate.proto\"\xa6\x05\n" +
+	"\x19calandria/v1/liquor.proto\x12\fcalandria.v1\x1a\x1bbuf/validate/validate.proto\"#\n" +
+	"\x06Liquor\x12\x19\n" +
+	"\x02id\x18\x01 \x01(\tB\t\xbaH\x06r\x04\x10\x01\x18<R\x02id\"\x90\x06\n" +
 	"\fCustomLiquor\x12 \n" +
 	"\x06source\x18\x01 \x01(\tB\b\xbaH\x05r\x03\x18\xc8\x01R\x06source\x122\n" +
 	"\x06rise_k\x18\x02 \x01(\x01B\x19\xbaH\x16\x12\x14@\x01\x19\x00\x00\x00\x00\x00\x00i@)\x00\x00\x00\x00\x00\x00\x00\x00H\x00R\x05riseK\x12G\n" +
 	"\x0frise_polynomial\x18\x03 \x01(\v2\x1c.calandria.v1.RisePolynomialH\x00R\x0erisePolynomial\x126\n" +
-	"\aduhring\x18\x04 \x01(\v2\x1a.calandria.v1.DuhringLinesH\x00R\aduhring\x12T\n" +
+	"\aduhring\x18\x04 \x01(\v2\x1a.calandria.v1.DuhringLinesH\x00R\aduhring\x128\n" +
+	"\n" +
+	"rise_table\x18\n" +
+	" \x01(\v2\x17.calandria.v1.RiseTableH\x00R\triseTable\x12.\n" +
+	"\x06solute\x18\v \x01(\v2\x14.calandria.v1.SoluteH\x00R\x06solute\x12T\n" +
 	"\x19specific_heat_kj_per_kg_k\x18\x05 \x01(\x01B\x19\xbaH\x16\x12\x14@\x01\x19\x00\x00\x00\x00\x00\x004@!\x00\x00\x00\x00\x00\x00\x00\x00H\x01R\x14specificHeatKjPerKgK\x12`\n" +
 	"\x18specific_heat_polynomial\x18\x06 \x01(\v2$.calandria.v1.SpecificHeatPolynomialH\x01R\x16specificHeatPolynomial\x12D\n" +
 	"\x0eenthalpy_table\x18\a \x01(\v2\x1b.calandria.v1.EnthalpyTableH\x01R\renthalpyTable\x12F\n" +
@@ -710,7 +1009,25 @@ const file_calandria_v1_liquor_proto_rawDesc = "" +
 	"\rtemperature_c\x18\x01 \x01(\x01B\x1c\xbaH\x19\xc8\x01\x01\x12\x14@\x01\x19\x00\x00\x00\x00\x00\x00y@)\x00\x00\x00\x00\x00\x00\x00\x00H\x00R\ftemperatureC\x88\x01\x01\x12N\n" +
 	"\x12enthalpy_kj_per_kg\x18\x02 \x01(\x01B\x1c\xbaH\x19\xc8\x01\x01\x12\x14@\x01\x19\x00\x00\x00\x00\x00\x88\xc3@)\x00\x00\x00\x00\x00\x88\xc3\xc0H\x01R\x0fenthalpyKjPerKg\x88\x01\x01B\x10\n" +
 	"\x0e_temperature_cB\x15\n" +
-	"\x13_enthalpy_kj_per_kgB<Z:calandria.example/calandria/proto/calandria/v1;calandriav1b\x06proto3"
+	"\x13_enthalpy_kj_per_kg\"B\n" +
+	"\tRiseTable\x125\n" +
+	"\x04rows\x18\x01 \x03(\v2\x15.calandria.v1.RiseRowB\n" +
+	"\xbaH\a\x92\x01\x04\b\x01\x102R\x04rows\"\xa6\x01\n" +
+	"\aRiseRow\x12J\n" +
+	"\x0fsolids_fraction\x18\x01 \x01(\x01B\x1c\xbaH\x19\xc8\x01\x01\x12\x14@\x01\x19\x00\x00\x00\x00\x00\x00\xf0?)\x00\x00\x00\x00\x00\x00\x00\x00H\x00R\x0esolidsFraction\x88\x01\x01\x12;\n" +
+	"\x06points\x18\x02 \x03(\v2\x17.calandria.v1.RisePointB\n" +
+	"\xbaH\a\x92\x01\x04\b\x01\x10dR\x06pointsB\x12\n" +
+	"\x10_solids_fraction\"\xd2\x01\n" +
+	"\tRisePoint\x12`\n" +
+	"\x1bwater_boiling_temperature_c\x18\x01 \x01(\x01B\x1c\xbaH\x19\xc8\x01\x01\x12\x14@\x01\x19\x00\x00\x00\x00\x00\xe0u@)\x00\x00\x00\x00\x00\x00\x00\x00H\x00R\x18waterBoilingTemperatureC\x88\x01\x01\x128\n" +
+	"\x06rise_k\x18\x02 \x01(\x01B\x1c\xbaH\x19\xc8\x01\x01\x12\x14@\x01\x19\x00\x00\x00\x00\x00\x00i@)\x00\x00\x00\x00\x00\x00\x00\x00H\x01R\x05riseK\x88\x01\x01B\x1e\n" +
+	"\x1c_water_boiling_temperature_cB\t\n" +
+	"\a_rise_k\"\xd8\x01\n" +
+	"\x06Solute\x12Q\n" +
+	"\x14molar_mass_g_per_mol\x18\x01 \x01(\x01B\x1c\xbaH\x19\xc8\x01\x01\x12\x14@\x01\x19\x00\x00\x00\x00\xd0\x12cA)\x00\x00\x00\x00\x00\x00\xf0?H\x00R\x10molarMassGPerMol\x88\x01\x01\x12L\n" +
+	"\x11van_t_hoff_factor\x18\x02 \x01(\x01B\x1c\xbaH\x19\xc8\x01\x01\x12\x14@\x01\x19\x00\x00\x00\x00\x00\x004@!\x00\x00\x00\x00\x00\x00\x00\x00H\x01R\x0evanTHoffFactor\x88\x01\x01B\x17\n" +
+	"\x15_molar_mass_g_per_molB\x14\n" +
+	"\x12_van_t_hoff_factorB<Z:calandria.example/calandria/proto/calandria/v1;calandriav1b\x06proto3"
 
 var (
 	file_calandria_v1_liquor_proto_rawDescOnce sync.Once
@@ -724,32 +1041,41 @@ func file_calandria_v1_liquor_proto_rawDescGZIP() []byte {
 	return file_calandria_v1_liquor_proto_rawDescData
 }
 
-var file_calandria_v1_liquor_proto_msgTypes = make([]protoimpl.MessageInfo, 9)
+var file_calandria_v1_liquor_proto_msgTypes = make([]protoimpl.MessageInfo, 14)
 var file_calandria_v1_liquor_proto_goTypes = []any{
-	(*CustomLiquor)(nil),           // 0: calandria.v1.CustomLiquor
-	(*DensityPolynomial)(nil),      // 1: calandria.v1.DensityPolynomial
-	(*RisePolynomial)(nil),         // 2: calandria.v1.RisePolynomial
-	(*SpecificHeatPolynomial)(nil), // 3: calandria.v1.SpecificHeatPolynomial
-	(*DuhringLines)(nil),           // 4: calandria.v1.DuhringLines
-	(*DuhringLine)(nil),            // 5: calandria.v1.DuhringLine
-	(*EnthalpyTable)(nil),          // 6: calandria.v1.EnthalpyTable
-	(*EnthalpyRow)(nil),            // 7: calandria.v1.EnthalpyRow
-	(*EnthalpyPoint)(nil),          // 8: calandria.v1.EnthalpyPoint
+	(*Liquor)(nil),                 // 0: calandria.v1.Liquor
+	(*CustomLiquor)(nil),           // 1: calandria.v1.CustomLiquor
+	(*DensityPolynomial)(nil),      // 2: calandria.v1.DensityPolynomial
+	(*RisePolynomial)(nil),         // 3: calandria.v1.RisePolynomial
+	(*SpecificHeatPolynomial)(nil), // 4: calandria.v1.SpecificHeatPolynomial
+	(*DuhringLines)(nil),           // 5: calandria.v1.DuhringLines
+	(*DuhringLine)(nil),            // 6: calandria.v1.DuhringLine
+	(*EnthalpyTable)(nil),          // 7: calandria.v1.EnthalpyTable
+	(*EnthalpyRow)(nil),            // 8: calandria.v1.EnthalpyRow
+	(*EnthalpyPoint)(nil),          // 9: calandria.v1.EnthalpyPoint
+	(*RiseTable)(nil),              // 10: calandria.v1.RiseTable
+	(*RiseRow)(nil),                // 11: calandria.v1.RiseRow
+	(*RisePoint)(nil),              // 12: calandria.v1.RisePoint
+	(*Solute)(nil),                 // 13: calandria.v1.Solute
 }
 var file_calandria_v1_liquor_proto_depIdxs = []int32{
-	2, // 0: calandria.v1.CustomLiquor.rise_polynomial:type_name -> calandria.v1.RisePolynomial
-	4, // 1: calandria.v1.CustomLiquor.duhring:type_name -> calandria.v1.DuhringLines
-	3, // 2: calandria.v1.CustomLiquor.specific_heat_polynomial:type_name -> calandria.v1.SpecificHeatPolynomial
-	6, // 3: calandria.v1.CustomLiquor.enthalpy_table:type_name -> calandria.v1.EnthalpyTable
-	1, // 4: calandria.v1.CustomLiquor.density_polynomial:type_name -> calandria.v1.DensityPolynomial
-	5, // 5: calandria.v1.DuhringLines.lines:type_name -> calandria.v1.DuhringLine
-	7, // 6: calandria.v1.EnthalpyTable.rows:type_name -> calandria.v1.EnthalpyRow
-	8, // 7: calandria.v1.EnthalpyRow.points:type_name -> calandria.v1.EnthalpyPoint
-	8, // [8:8] is the sub-list for method output_type
-	8, // [8:8] is the sub-list for method input_type
-	8, // [8:8] is the sub-list for extension type_name
-	8, // [8:8] is the sub-list for extension extendee
-	0, // [0:8] is the sub-list for field type_name
+	3,  // 0: calandria.v1.CustomLiquor.rise_polynomial:type_name -> calandria.v1.RisePolynomial
+	5,  // 1: calandria.v1.CustomLiquor.duhring:type_name -> calandria.v1.DuhringLines
+	10, // 2: calandria.v1.CustomLiquor.rise_table:type_name -> calandria.v1.RiseTable
+	13, // 3: calandria.v1.CustomLiquor.solute:type_name -> calandria.v1.Solute
+	4,  // 4: calandria.v1.CustomLiquor.specific_heat_polynomial:type_name -> calandria.v1.SpecificHeatPolynomial
+	7,  // 5: calandria.v1.CustomLiquor.enthalpy_table:type_name -> calandria.v1.EnthalpyTable
+	2,  // 6: calandria.v1.CustomLiquor.density_polynomial:type_name -> calandria.v1.DensityPolynomial
+	6,  // 7: calandria.v1.DuhringLines.lines:type_name -> calandria.v1.DuhringLine
+	8,  // 8: calandria.v1.EnthalpyTable.rows:type_name -> calandria.v1.EnthalpyRow
+	9,  // 9: calandria.v1.EnthalpyRow.points:type_name -> calandria.v1.EnthalpyPoint
+	11, // 10: calandria.v1.RiseTable.rows:type_name -> calandria.v1.RiseRow
+	12, // 11: calandria.v1.RiseRow.points:type_name -> calandria.v1.RisePoint
+	12, // [12:12] is the sub-list for method output_type
+	12, // [12:12] is the sub-list for method input_type
+	12, // [12:12] is the sub-list for extension type_name
+	12, // [12:12] is the sub-list for extension extendee
+	0,  // [0:12] is the sub-list for field type_name
 }
 
 func init() { file_calandria_v1_liquor_proto_init() }
@@ -757,26 +1083,31 @@ func file_calandria_v1_liquor_proto_init() {
 	if File_calandria_v1_liquor_proto != nil {
 		return
 	}
-	file_calandria_v1_liquor_proto_msgTypes[0].OneofWrappers = []any{
+	file_calandria_v1_liquor_proto_msgTypes[1].OneofWrappers = []any{
 		(*CustomLiquor_RiseK)(nil),
 		(*CustomLiquor_RisePolynomial)(nil),
 		(*CustomLiquor_Duhring)(nil),
+		(*CustomLiquor_RiseTable)(nil),
+		(*CustomLiquor_Solute)(nil),
 		(*CustomLiquor_SpecificHeatKjPerKgK)(nil),
 		(*CustomLiquor_SpecificHeatPolynomial)(nil),
 		(*CustomLiquor_EnthalpyTable)(nil),
 		(*CustomLiquor_DensityKgPerM3)(nil),
 		(*CustomLiquor_DensityPolynomial)(nil),
 	}
-	file_calandria_v1_liquor_proto_msgTypes[5].OneofWrappers = []any{}
-	file_calandria_v1_liquor_proto_msgTypes[7].OneofWrappers = []any{}
+	file_calandria_v1_liquor_proto_msgTypes[6].OneofWrappers = []any{}
 	file_calandria_v1_liquor_proto_msgTypes[8].OneofWrappers = []any{}
+	file_calandria_v1_liquor_proto_msgTypes[9].OneofWrappers = []any{}
+	file_calandria_v1_liquor_proto_msgTypes[11].OneofWrappers = []any{}
+	file_calandria_v1_liquor_proto_msgTypes[12].OneofWrappers = []any{}
+	file_calandria_v1_liquor_proto_msgTypes[13].OneofWrappers = []any{}
 	type x struct{}
 	out := protoimpl.TypeBuilder{
 		File: protoimpl.DescBuilder{
 			GoPackagePath: reflect.TypeOf(x{}).PkgPath(),
 			RawDescriptor: unsafe.Slice(unsafe.StringData(file_calandria_v1_liquor_proto_rawDesc), len(file_calandria_v1_liquor_proto_rawDesc)),
 			NumEnums:      0,
-			NumMessages:   9,
+			NumMessages:   14,
 			NumExtensions: 0,
 			NumServices:   0,
 		},

@@ -43,6 +43,8 @@ const (
 	// The state lies where two regions of the steam formulation meet and differ a
 	// little; the one with the lower number answers.
 	AdvisoryCode_ADVISORY_CODE_BOUNDARY_JUMP AdvisoryCode = 7
+	// More solids than dissolve: some would be crystals.
+	AdvisoryCode_ADVISORY_CODE_CRYSTALLISATION AdvisoryCode = 8
 )
 
 // Enum value maps for AdvisoryCode.
@@ -56,6 +58,7 @@ var (
 		5: "ADVISORY_CODE_FEED_FLASHES",
 		6: "ADVISORY_CODE_SMALL_DRIVING_FORCE",
 		7: "ADVISORY_CODE_BOUNDARY_JUMP",
+		8: "ADVISORY_CODE_CRYSTALLISATION",
 	}
 	AdvisoryCode_value = map[string]int32{
 		"ADVISORY_CODE_UNSPECIFIED":          0,
@@ -66,6 +69,7 @@ var (
 		"ADVISORY_CODE_FEED_FLASHES":         5,
 		"ADVISORY_CODE_SMALL_DRIVING_FORCE":  6,
 		"ADVISORY_CODE_BOUNDARY_JUMP":        7,
+		"ADVISORY_CODE_CRYSTALLISATION":      8,
 	}
 )
 
@@ -460,7 +464,7 @@ const file_calandria_v1_provenance_proto_rawDesc = "" +
 	"\n" +
 	"Provenance\x12%\n" +
 	"\x0eengine_version\x18\x01 \x01(\tR\rengineVersion\x12+\n" +
-	"\x06models\x18\x02 \x03(\v2\x13.calandria.v1.ModelR\x06models*\xa6\x02\n" +
+	"\x06models\x18\x02 \x03(\v2\x13.calandria.v1.ModelR\x06models*\xc9\x02\n" +
 	"\fAdvisoryCode\x12\x1d\n" +
 	"\x19ADVISORY_CODE_UNSPECIFIED\x10\x00\x12\x1f\n" +
 	"\x1bADVISORY_CODE_OUTSIDE_RANGE\x10\x01\x12%\n" +
@@ -469,7 +473,8 @@ const file_calandria_v1_provenance_proto_rawDesc = "" +
 	"\"ADVISORY_CODE_HELD_BEYOND_STRENGTH\x10\x04\x12\x1e\n" +
 	"\x1aADVISORY_CODE_FEED_FLASHES\x10\x05\x12%\n" +
 	"!ADVISORY_CODE_SMALL_DRIVING_FORCE\x10\x06\x12\x1f\n" +
-	"\x1bADVISORY_CODE_BOUNDARY_JUMP\x10\a*M\n" +
+	"\x1bADVISORY_CODE_BOUNDARY_JUMP\x10\a\x12!\n" +
+	"\x1dADVISORY_CODE_CRYSTALLISATION\x10\b*M\n" +
 	"\bSeverity\x12\x18\n" +
 	"\x14SEVERITY_UNSPECIFIED\x10\x00\x12\x11\n" +
 	"\rSEVERITY_NOTE\x10\x01\x12\x14\n" +

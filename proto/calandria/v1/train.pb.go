@@ -28,7 +28,9 @@ const (
 // out (dryness_fraction is 1), unless find names them.
 type SolveEffectRequest struct {
 	state protoimpl.MessageState `protogen:"open.v1"`
-	// What is concentrated.
+	// What is concentrated, of the catalogue; or custom_liquor.
+	Liquor *Liquor `protobuf:"bytes,1,opt,name=liquor,proto3" json:"liquor,omitempty"`
+	// What is concentrated, by the caller's own figures; or liquor.
 	CustomLiquor *CustomLiquor `protobuf:"bytes,2,opt,name=custom_liquor,json=customLiquor,proto3" json:"custom_liquor,omitempty"`
 	// Liquor that enters.
 	Feed *Stream `protobuf:"bytes,3,opt,name=feed,proto3" json:"feed,omitempty"`
@@ -81,6 +83,13 @@ func (x *SolveEffectRequest) ProtoReflect() protoreflect.Message {
 // Deprecated: Use SolveEffectRequest.ProtoReflect.Descriptor instead.
 func (*SolveEffectRequest) Descriptor() ([]byte, []int) {
 	return file_calandria_v1_train_proto_rawDescGZIP(), []int{0}
+}
+
+func (x *SolveEffectRequest) GetLiquor() *Liquor {
+	if x != nil {
+		return x.Liquor
+	}
+	return nil
 }
 
 func (x *SolveEffectRequest) GetCustomLiquor() *CustomLiquor {
@@ -1232,9 +1241,10 @@ var File_calandria_v1_train_proto protoreflect.FileDescriptor
 
 const file_calandria_v1_train_proto_rawDesc = "" +
 	"\n" +
-	"\x18calandria/v1/train.proto\x12\fcalandria.v1\x1a\x1bbuf/validate/validate.proto\x1a\x19calandria/v1/liquor.proto\x1a\x1dcalandria/v1/provenance.proto\x1a\x1cgoogle/api/annotations.proto\"\xe4\x06\n" +
-	"\x12SolveEffectRequest\x12G\n" +
-	"\rcustom_liquor\x18\x02 \x01(\v2\x1a.calandria.v1.CustomLiquorB\x06\xbaH\x03\xc8\x01\x01R\fcustomLiquor\x12(\n" +
+	"\x18calandria/v1/train.proto\x12\fcalandria.v1\x1a\x1bbuf/validate/validate.proto\x1a\x19calandria/v1/liquor.proto\x1a\x1dcalandria/v1/provenance.proto\x1a\x1cgoogle/api/annotations.proto\"\x8a\a\n" +
+	"\x12SolveEffectRequest\x12,\n" +
+	"\x06liquor\x18\x01 \x01(\v2\x14.calandria.v1.LiquorR\x06liquor\x12?\n" +
+	"\rcustom_liquor\x18\x02 \x01(\v2\x1a.calandria.v1.CustomLiquorR\fcustomLiquor\x12(\n" +
 	"\x04feed\x18\x03 \x01(\v2\x14.calandria.v1.StreamR\x04feed\x12.\n" +
 	"\aproduct\x18\x04 \x01(\v2\x14.calandria.v1.StreamR\aproduct\x12-\n" +
 	"\x05steam\x18\x05 \x01(\v2\x17.calandria.v1.LiveSteamR\x05steam\x12,\n" +
@@ -1415,35 +1425,37 @@ var file_calandria_v1_train_proto_goTypes = []any{
 	(*EffectSolution)(nil),     // 7: calandria.v1.EffectSolution
 	(*Sensitivity)(nil),        // 8: calandria.v1.Sensitivity
 	(*EffectCheck)(nil),        // 9: calandria.v1.EffectCheck
-	(*CustomLiquor)(nil),       // 10: calandria.v1.CustomLiquor
-	(*Advisory)(nil),           // 11: calandria.v1.Advisory
-	(*Provenance)(nil),         // 12: calandria.v1.Provenance
+	(*Liquor)(nil),             // 10: calandria.v1.Liquor
+	(*CustomLiquor)(nil),       // 11: calandria.v1.CustomLiquor
+	(*Advisory)(nil),           // 12: calandria.v1.Advisory
+	(*Provenance)(nil),         // 13: calandria.v1.Provenance
 }
 var file_calandria_v1_train_proto_depIdxs = []int32{
-	10, // 0: calandria.v1.SolveEffectRequest.custom_liquor:type_name -> calandria.v1.CustomLiquor
-	1,  // 1: calandria.v1.SolveEffectRequest.feed:type_name -> calandria.v1.Stream
-	1,  // 2: calandria.v1.SolveEffectRequest.product:type_name -> calandria.v1.Stream
-	2,  // 3: calandria.v1.SolveEffectRequest.steam:type_name -> calandria.v1.LiveSteam
-	3,  // 4: calandria.v1.SolveEffectRequest.effect:type_name -> calandria.v1.Effect
-	1,  // 5: calandria.v1.EffectSolution.feed:type_name -> calandria.v1.Stream
-	1,  // 6: calandria.v1.EffectSolution.product:type_name -> calandria.v1.Stream
-	2,  // 7: calandria.v1.EffectSolution.steam:type_name -> calandria.v1.LiveSteam
-	4,  // 8: calandria.v1.EffectSolution.effect:type_name -> calandria.v1.SolvedEffect
-	5,  // 9: calandria.v1.EffectSolution.closure:type_name -> calandria.v1.Closure
-	6,  // 10: calandria.v1.EffectSolution.defaults_applied:type_name -> calandria.v1.DefaultApplied
-	11, // 11: calandria.v1.EffectSolution.advisories:type_name -> calandria.v1.Advisory
-	12, // 12: calandria.v1.EffectSolution.provenance:type_name -> calandria.v1.Provenance
-	8,  // 13: calandria.v1.EffectSolution.sensitivities:type_name -> calandria.v1.Sensitivity
-	6,  // 14: calandria.v1.EffectCheck.defaults_applied:type_name -> calandria.v1.DefaultApplied
-	0,  // 15: calandria.v1.TrainService.SolveEffect:input_type -> calandria.v1.SolveEffectRequest
-	0,  // 16: calandria.v1.TrainService.CheckEffect:input_type -> calandria.v1.SolveEffectRequest
-	7,  // 17: calandria.v1.TrainService.SolveEffect:output_type -> calandria.v1.EffectSolution
-	9,  // 18: calandria.v1.TrainService.CheckEffect:output_type -> calandria.v1.EffectCheck
-	17, // [17:19] is the sub-list for method output_type
-	15, // [15:17] is the sub-list for method input_type
-	15, // [15:15] is the sub-list for extension type_name
-	15, // [15:15] is the sub-list for extension extendee
-	0,  // [0:15] is the sub-list for field type_name
+	10, // 0: calandria.v1.SolveEffectRequest.liquor:type_name -> calandria.v1.Liquor
+	11, // 1: calandria.v1.SolveEffectRequest.custom_liquor:type_name -> calandria.v1.CustomLiquor
+	1,  // 2: calandria.v1.SolveEffectRequest.feed:type_name -> calandria.v1.Stream
+	1,  // 3: calandria.v1.SolveEffectRequest.product:type_name -> calandria.v1.Stream
+	2,  // 4: calandria.v1.SolveEffectRequest.steam:type_name -> calandria.v1.LiveSteam
+	3,  // 5: calandria.v1.SolveEffectRequest.effect:type_name -> calandria.v1.Effect
+	1,  // 6: calandria.v1.EffectSolution.feed:type_name -> calandria.v1.Stream
+	1,  // 7: calandria.v1.EffectSolution.product:type_name -> calandria.v1.Stream
+	2,  // 8: calandria.v1.EffectSolution.steam:type_name -> calandria.v1.LiveSteam
+	4,  // 9: calandria.v1.EffectSolution.effect:type_name -> calandria.v1.SolvedEffect
+	5,  // 10: calandria.v1.EffectSolution.closure:type_name -> calandria.v1.Closure
+	6,  // 11: calandria.v1.EffectSolution.defaults_applied:type_name -> calandria.v1.DefaultApplied
+	12, // 12: calandria.v1.EffectSolution.advisories:type_name -> calandria.v1.Advisory
+	13, // 13: calandria.v1.EffectSolution.provenance:type_name -> calandria.v1.Provenance
+	8,  // 14: calandria.v1.EffectSolution.sensitivities:type_name -> calandria.v1.Sensitivity
+	6,  // 15: calandria.v1.EffectCheck.defaults_applied:type_name -> calandria.v1.DefaultApplied
+	0,  // 16: calandria.v1.TrainService.SolveEffect:input_type -> calandria.v1.SolveEffectRequest
+	0,  // 17: calandria.v1.TrainService.CheckEffect:input_type -> calandria.v1.SolveEffectRequest
+	7,  // 18: calandria.v1.TrainService.SolveEffect:output_type -> calandria.v1.EffectSolution
+	9,  // 19: calandria.v1.TrainService.CheckEffect:output_type -> calandria.v1.EffectCheck
+	18, // [18:20] is the sub-list for method output_type
+	16, // [16:18] is the sub-list for method input_type
+	16, // [16:16] is the sub-list for extension type_name
+	16, // [16:16] is the sub-list for extension extendee
+	0,  // [0:16] is the sub-list for field type_name
 }
 
 func init() { file_calandria_v1_train_proto_init() }
