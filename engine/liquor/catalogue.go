@@ -22,9 +22,9 @@ func ByID(id string) (*Liquor, error) {
 	case "water":
 		return &Liquor{id: id, pure: true, rise: constantRise(0), heat: waterHeat{}, dense: waterDensity{}, models: steam.Models()[:0]}, nil
 	case "sucrose":
-		return &Liquor{id: id, rise: sucroseRise{}, heat: sucroseHeat{}, dense: sucroseDensity{}, models: sucroseModels()}, nil
+		return &Liquor{id: id, rise: sucroseRise{}, heat: sucroseHeat{}, dense: sucroseDensity{}, solubility: sucroseSolubility, strongest: sucroseStrongest, models: sucroseModels()}, nil
 	case "sodium-hydroxide":
-		return &Liquor{id: id, rise: causticRise{}, heat: causticHeat{}, dense: causticDensity{}, models: causticModels()}, nil
+		return &Liquor{id: id, rise: causticRise{}, heat: causticHeat{}, dense: causticDensity{}, strongest: causticStrongest, models: causticModels()}, nil
 	}
 	return nil, &fault.Invalid{
 		Field: "liquor.id", Value: strconv.Quote(id), Limit: "one of " + strings.Join(IDs(), ", "),

@@ -54,7 +54,7 @@ func TestSucrosePublished(t *testing.T) {
 		}
 	}
 	for celsius, want := range map[float64]float64{20: 0.6709, 40: 0.7042, 60: 0.7418, 80: 0.7836, 100: 0.8297} {
-		if got := sucroseSolubility(quantity.Zero + celsius); math.Abs(got-want) > 0.005 {
+		if got, _ := sucroseSolubility(quantity.Zero + celsius); math.Abs(got-want) > 0.005 {
 			t.Errorf("solubility at %g degC is %.4f, want %.4f", celsius, got, want)
 		}
 	}
@@ -136,7 +136,7 @@ func TestRiseTable(t *testing.T) {
 func TestCatalogueLaws(t *testing.T) {
 	for _, id := range IDs() {
 		l := byID(t, id)
-		strongest := map[string]float64{"water": 0, "sucrose": 0.85, "sodium-hydroxide": 0.6}[id]
+		strongest := map[string]float64{"water": 0, "sucrose": 0.65, "sodium-hydroxide": 0.6}[id]
 		for c := 30.0; c <= 140; c += 5 {
 			tk := quantity.Zero + c
 			h, _, _ := l.Enthalpy(0, tk)
@@ -178,6 +178,35 @@ func TestCatalogueLaws(t *testing.T) {
 					near("density by solids", rhoByW, difference(densityOf, dw, 0), 10)
 				}
 			}
+		}
+	}
+}
+
+// TestSaturation: above its solubility sucrose boils like the saturated liquor,
+// with the crystals beside; on either side the rise is smooth.
+func TestSaturation(t *testing.T) {
+	l := byID(t, "sucrose")
+	tw := quantity.Zero + 60
+	rise, _, _ := l.Rise(0.9, tw)
+	soluble, _ := sucroseSolubility(tw + rise)
+	if at, _, _ := l.Rise(soluble, tw); math.Abs(at-rise) > 1e-9 {
+		t.Errorf("rise %g above saturation, %g at it", rise, at)
+	}
+	if fraction, known := l.Crystals(0.9, tw+rise); !known || math.Abs(fraction*(1)+(1-fraction)*soluble-0.9) > 1e-12 {
+		t.Errorf("%g of crystals at %g, saturated at %g", fraction, 0.9, soluble)
+	}
+	if fraction, _ := l.Crystals(0.5, tw); fraction != 0 {
+		t.Errorf("%g of crystals in thin liquor", fraction)
+	}
+	const d = 1e-3
+	for _, w := range []float64{soluble - 0.01, soluble + 0.01} {
+		_, byW, byTw := l.Rise(w, tw)
+		above, _, _ := l.Rise(w, tw+d)
+		below, _, _ := l.Rise(w, tw-d)
+		strong, _, _ := l.Rise(w+1e-5, tw)
+		weak, _, _ := l.Rise(w-1e-5, tw)
+		if math.Abs(byTw-(above-below)/(2*d)) > 1e-6 || math.Abs(byW-(strong-weak)/2e-5) > 1e-3*(1+math.Abs(byW)) {
+			t.Errorf("at %g: slopes %g and %g, by differences %g and %g", w, byW, byTw, (strong-weak)/2e-5, (above-below)/(2*d))
 		}
 	}
 }

@@ -17,6 +17,12 @@ type Liquor struct {
 	heat   heatModel
 	dense  densityModel // nil for a liquor whose density is not known
 
+	// solubility is the solids fraction of saturated liquor at t in K, with its
+	// slope; nil if it is not known.
+	solubility func(t float64) (solids, byT float64)
+
+	strongest float64 // kg/kg; 0 for a caller's own, whose figures may reach anywhere
+
 	id     string           // in the catalogue; "" for a caller's own
 	pure   bool             // without solids
 	models []evidence.Model // of the catalogue
@@ -88,6 +94,25 @@ func (l *Liquor) HasDensity() bool { return l.dense != nil }
 
 // DensityDependsOnSolids is false for a liquor with one density.
 func (l *Liquor) DensityDependsOnSolids() bool { return l.dense != nil && l.dense.dependsOnSolids() }
+
+// Crystals returns the mass fraction of liquor with solids fraction w at t in K
+// that is crystals; known is false for a liquor whose solubility is not known.
+func (l *Liquor) Crystals(w, t float64) (fraction float64, known bool) {
+	if l.solubility == nil {
+		return 0, false
+	}
+	soluble, _ := l.solubility(t)
+	return max(0, (w-soluble)/(1-soluble)), true
+}
+
+// Strongest is the solids fraction up to which the liquor's figures reach at any
+// temperature.
+func (l *Liquor) Strongest() float64 {
+	if l.strongest == 0 {
+		return 1
+	}
+	return l.strongest
+}
 
 // CheckDensity returns a *fault.Range where the density, at solids fraction w,
 // can not be that of a liquor.

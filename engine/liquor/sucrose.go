@@ -6,7 +6,6 @@ import (
 
 	"calandria.example/calandria/engine/evidence"
 	"calandria.example/calandria/engine/fault"
-	"calandria.example/calandria/engine/numeric"
 	"calandria.example/calandria/engine/quantity"
 )
 
@@ -32,13 +31,27 @@ func sucroseActivity(w, t float64) (logarithm, byW, byT float64) {
 	return math.Log1p(-x) + excess*shape, byX * xByW, -excess * shape / t
 }
 
+// heldActivity is that of the solution that is left where more sucrose is there
+// than dissolves.
+func heldActivity(w, t float64) (logarithm, byW, byT float64) {
+	soluble, solubleByT := sucroseSolubility(t)
+	if w <= soluble {
+		return sucroseActivity(w, t)
+	}
+	logarithm, byW, byT = sucroseActivity(soluble, t)
+	return logarithm, 0, byT + byW*solubleByT
+}
+
 type sucroseRise struct{}
 
 func (sucroseRise) at(w, tw float64) (rise, byW, byTw float64) {
-	return activity(sucroseActivity).riseBy(w, tw)
+	return activity(heldActivity).riseBy(w, tw)
 }
 
 func (sucroseRise) dependsOnSolids() bool { return true }
+
+// sucroseStrongest is how strong, in kg/kg, the figures go.
+const sucroseStrongest = 0.95
 
 // sure is how strong, in kg/kg, sucrose's rise is confirmed: old handbook tables
 // lie 30 % above the model from there on.
@@ -73,17 +86,17 @@ func (sucroseHeat) at(w, t float64) (h, byW, byT float64) {
 func (sucroseHeat) dependsOnSolids() bool { return true }
 
 func (sucroseHeat) check(w, t float64) ([]evidence.Advisory, error) {
-	const strongest, hottest = 0.95, quantity.Zero + 150
-	if !(w >= 0 && w <= strongest) {
-		return nil, &fault.Range{Quantity: "solids of sucrose", Source: "liquor sucrose", Value: w, Min: 0, Max: strongest}
+	const hottest = quantity.Zero + 150
+	if !(w >= 0 && w <= sucroseStrongest) {
+		return nil, &fault.Range{Quantity: "solids of sucrose", Source: "liquor sucrose", Value: w, Min: 0, Max: sucroseStrongest}
 	}
 	if !(t <= hottest) {
 		return nil, &fault.Range{Quantity: "temperature of sucrose", Unit: "K", Source: "liquor sucrose", Value: t, Min: quantity.Zero, Max: hottest}
 	}
-	if soluble := sucroseSolubility(t); w > soluble {
+	if soluble, _ := sucroseSolubility(t); w > soluble {
 		return []evidence.Advisory{{
 			Code: evidence.Crystallisation, Warning: true, Field: "product.solids_fraction",
-			Message: fmt.Sprintf("At %.4g degC sucrose dissolves to solids of %.4g kg/kg; at %.4g kg/kg a fraction of %.3g would be crystals. The figures are those of a solution all the same.", t-quantity.Zero, soluble, w, (w-soluble)/(1-soluble)),
+			Message: fmt.Sprintf("At %.4g degC sucrose dissolves to solids of %.4g kg/kg; at %.4g kg/kg a fraction of %.3g is crystals, and the liquor boils like the saturated one.", t-quantity.Zero, soluble, w, (w-soluble)/(1-soluble)),
 			Limit:   fmt.Sprintf("%.4g kg/kg", soluble),
 		}}, nil
 	}
@@ -94,9 +107,15 @@ func (sucroseHeat) model() evidence.Model { return evidence.Model{} }
 
 // sucroseSolubility is the solids fraction of a saturated solution at t in K, by
 // Vavrinecz (1962), 0 to 100 degC.
-func sucroseSolubility(t float64) float64 {
-	s, _ := numeric.Polynomial([]float64{0.64447, 8.222e-4, 1.6169e-5, -1.558e-8, -4.63e-10}, min(max(t-quantity.Zero, 0), 120))
-	return s
+func sucroseSolubility(t float64) (solids, byT float64) {
+	const hottest = 120.0 // degC, to which it is held to go on
+	c := t - quantity.Zero
+	held := min(max(c, 0), hottest)
+	solids = 0.64447 + held*(8.222e-4+held*(1.6169e-5+held*(-1.558e-8-held*4.63e-10)))
+	if held == c {
+		byT = 8.222e-4 + held*(2*1.6169e-5+held*(-3*1.558e-8-held*4*4.63e-10))
+	}
+	return solids, byT
 }
 
 // sucroseDensity is liquid water's, times what Bubnik et al. (1995) have for

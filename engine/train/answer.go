@@ -33,6 +33,7 @@ func (q *question) answer(v *state) (*Answer, error) {
 	case v[LiquorLevel] > 0:
 		a.LiquorLevel, a.StaticHead = v[LiquorLevel], v[ChestTemperature]-v[BoilingTemperature]-v[drivingForce]
 	}
+	a.Crystals, a.SolubilityKnown = q.liquor.Crystals(v[SolidsOut], v[BoilingTemperature])
 	if rho, _, _, ok := q.liquor.Density(v[FeedSolids], v[FeedTemperature]); ok {
 		a.FeedVolume = v[FeedFlow] / rho
 	}
@@ -58,7 +59,8 @@ func (q *question) answer(v *state) (*Answer, error) {
 	for i := range a.Models {
 		for _, remark := range a.Advisories {
 			if remark.Code == evidence.OutsideRange && a.Models[i].ID == "custom-enthalpy-table" ||
-				remark.Code == evidence.HeldBeyondStrength && a.Models[i].ID == "custom-rise-duhring" {
+				remark.Code == evidence.OutsideRange && a.Models[i].ID == q.liquor.ID()+"-rise" ||
+				remark.Code == evidence.HeldBeyondStrength && (a.Models[i].ID == "custom-rise-duhring" || a.Models[i].ID == "custom-rise-table") {
 				a.Models[i].Inside = false
 			}
 		}

@@ -347,7 +347,7 @@ func logarithmicMean(l *liquor.Liquor, v *state) (mean float64, by meanSlopes, e
 	if !(cold > 0 && hot > 0) {
 		return 0, by, &fault.Range{Quantity: "heating of the circulating liquor", Unit: "K difference", Source: "circulation", Value: heating, Min: 0, Max: cold}
 	}
-	byCold, byHot := 0.5, 0.5
+	var byCold, byHot float64
 	mean = (cold + hot) / 2
 	const alike = 1e-4 // relative difference below which the series is exact to rounding
 	if gap := heating / mean; gap < alike {

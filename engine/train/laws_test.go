@@ -11,6 +11,7 @@ import (
 	"calandria.example/calandria/engine/fault"
 	"calandria.example/calandria/engine/liquor"
 	"calandria.example/calandria/engine/quantity"
+	"calandria.example/calandria/engine/steam"
 )
 
 // TestDerivatives compares every derivative of every equation with central
@@ -120,6 +121,24 @@ func TestOnePlantFromManySides(t *testing.T) {
 			if math.Abs(a.Value[n]-base.Value[n]) > 1e-8*math.Max(1e-3, math.Abs(base.Value[n])) {
 				t.Errorf("%s from %s: %s is %.12g, was %.12g", sought.Path(), given.Path(), n.Path(), a.Value[n], base.Value[n])
 			}
+		}
+	}
+}
+
+// TestWithoutSolids: every catalogue liquor without solids is a boiler of water,
+// whose steam follows from the enthalpies of saturated liquid and vapour alone.
+func TestWithoutSolids(t *testing.T) {
+	for _, id := range liquor.IDs() {
+		a := solved(t, design(named(t, id), Given{FeedSolids, 0}, without(ProductSolids), Given{Evaporation, 1.5}))
+		liquid, vapour, err := steam.SaturationAtPressure(25e3)
+		chest, live, errChest := steam.SaturationAtPressure(180e3)
+		feed, _, errFeed := steam.Saturation(quantity.Zero + 40)
+		if err := errors.Join(err, errChest, errFeed); err != nil {
+			t.Fatal(err)
+		}
+		duty := 1.5*vapour.Enthalpy + 0.5*liquid.Enthalpy - 2*feed.Enthalpy
+		if math.Abs(a.Value[Duty]/duty-1) > 1e-9 || math.Abs(a.Value[SteamFlow]/(duty/(live.Enthalpy-chest.Enthalpy))-1) > 1e-9 || math.Abs(a.Rise) > 1e-9 {
+			t.Errorf("%s: duty %g, of water %g; steam %g; rise %g", id, a.Value[Duty], duty, a.Value[SteamFlow], a.Rise)
 		}
 	}
 }
@@ -381,13 +400,23 @@ func FuzzSolve(f *testing.F) {
 }
 
 func BenchmarkSolve(b *testing.B) {
-	l := sugar(b)
+	l, caustic := sugar(b), named(b, "sodium-hydroxide")
+	sucrose, pure := named(b, "sucrose"), named(b, "water")
+	boiler := func(last Given) Plant {
+		return design(pure, without(FeedSolids), without(ProductSolids), last)
+	}
 	for _, c := range []struct {
 		name  string
 		plant Plant
 	}{
 		{"design", design(l)},
 		{"rating", design(l, without(ProductSolids), Given{Area, 40})},
+		{"water/design", boiler(Given{Evaporation, 1.5})},
+		{"water/rating", boiler(Given{Area, 40})},
+		{"sucrose/design", design(sucrose)},
+		{"sucrose/rating", design(sucrose, without(ProductSolids), Given{Area, 40})},
+		{"sodium-hydroxide/design", design(caustic, Given{SteamPressure, 300e3})},
+		{"sodium-hydroxide/rating", design(caustic, Given{SteamPressure, 300e3}, without(ProductSolids), Given{Area, 40})},
 	} {
 		b.Run(c.name, func(b *testing.B) {
 			b.ReportAllocs()

@@ -52,6 +52,8 @@ type Answer struct {
 	LiquorHeating         float64 // K, of the circulating liquor
 	FeedVolume            float64 // m3/s; 0 if the density is not known
 	ProductVolume         float64 // m3/s; 0 if the density is not known
+	Crystals              float64 // kg/kg of the product
+	SolubilityKnown       bool
 
 	Closure    Closure
 	Advisories []evidence.Advisory

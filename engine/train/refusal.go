@@ -29,6 +29,10 @@ func (s *search) refusal() error {
 		if why := unphysical(&free.found[i], s.question); why != nil {
 			return why
 		}
+		// A plant that could be, but for the reach of the liquor's figures.
+		if _, why := s.question.answer(&free.found[i]); why != nil {
+			return why
+		}
 	}
 	for i := range free.dead {
 		if why := impossible(&free.dead[i], s.question); why != nil {

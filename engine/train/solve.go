@@ -91,6 +91,16 @@ type search struct {
 	dependent  *fault.Specification // set when the numbers given turned out to leave some open
 }
 
+// bounds are those of a number, and of solids that the liquor's figures reach
+// while the search keeps to what is possible.
+func (s *search) bounds(n Number) (low, high float64) {
+	low, high = bounds(n)
+	if s.physical && (n == SolidsOut || n == ProductSolids || n == FeedSolids) {
+		high = s.question.liquor.Strongest()
+	}
+	return low, high
+}
+
 func (s *search) from(i int, v state) {
 	if len(s.found) >= branchesMax {
 		return
@@ -185,7 +195,7 @@ func (s *search) direct(b *block, v state) (root []state, done bool) {
 	default:
 		return nil, false
 	}
-	if low, high := bounds(n); s.physical && !(v[n] >= low-1e-9*math.Abs(low) && v[n] <= high) {
+	if low, high := s.bounds(n); s.physical && !(v[n] >= low-1e-9*math.Abs(low) && v[n] <= high) {
 		return nil, true
 	}
 	return []state{v}, true
@@ -221,7 +231,7 @@ func (s *search) scan(b *block, v state) []state {
 		bisections = 30
 	)
 	n := b.numbers[0]
-	low, high := bounds(n)
+	low, high := s.bounds(n)
 	var d gradient
 	at := func(x float64) float64 {
 		w := v
@@ -421,7 +431,7 @@ func (s *search) advance(b *block, v *state, step, sizes []float64, worst float6
 		if !s.physical && k != temperature && k != pressure && n != SolidsOut && n != FeedSolids {
 			continue
 		}
-		low, high := bounds(n)
+		low, high := s.bounds(n)
 		if change < 0 && v[n]+change*length < low {
 			length = math.Min(length, toBound*(v[n]-low)/-change)
 		}

@@ -128,7 +128,8 @@ func EffectSolution(a *train.Answer) *calandriav1.EffectSolution {
 			LiquorLevelM:                 a.LiquorLevel,
 			StaticHeadK:                  a.StaticHead,
 			CirculationKgPerH:            part(train.Circulation),
-			LiquorHeatingK:               nil,
+			LiquorHeatingK:               existing(a.LiquorHeating, a.Circulation > 0),
+			CrystalsFraction:             existing(a.Crystals, a.SolubilityKnown),
 		},
 		EvaporationKgPerH:               read(train.Evaporation),
 		Economy:                         read(train.Economy),
@@ -141,7 +142,6 @@ func EffectSolution(a *train.Answer) *calandriav1.EffectSolution {
 		Provenance:      provenance(a.Models),
 		Sensitivities:   nil,
 	}
-	solution.Effect.LiquorHeatingK = existing(a.LiquorHeating, a.Circulation > 0)
 	if solution.GetEconomy() > 0 {
 		specific := 1 / solution.GetEconomy()
 		solution.SpecificSteamConsumptionKgPerKg = &specific

@@ -124,6 +124,7 @@ func (c *SteamColumns) Item(i int) *calandriav1.GetSteamStateRequest {
 	return &calandriav1.GetSteamStateRequest{
 		PressureKpaAbs: value(pressureField), TemperatureC: value(temperatureField), DrynessFraction: value(drynessField),
 		EnthalpyKjPerKg: value(enthalpyField), EntropyKjPerKgK: value(entropyField),
+		RequireEngineVersion: nil, // looked at for all of them
 	}
 }
 

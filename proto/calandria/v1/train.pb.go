@@ -564,8 +564,11 @@ type SolvedEffect struct {
 	CirculationKgPerH *float64 `protobuf:"fixed64,27,opt,name=circulation_kg_per_h,json=circulationKgPerH,proto3,oneof" json:"circulation_kg_per_h,omitempty"`
 	// How much that liquor is heated on its way; absent without it.
 	LiquorHeatingK *float64 `protobuf:"fixed64,28,opt,name=liquor_heating_k,json=liquorHeatingK,proto3,oneof" json:"liquor_heating_k,omitempty"`
-	unknownFields  protoimpl.UnknownFields
-	sizeCache      protoimpl.SizeCache
+	// Part of the liquor that leaves that is crystals; absent for a liquor whose
+	// solubility is not known.
+	CrystalsFraction *float64 `protobuf:"fixed64,29,opt,name=crystals_fraction,json=crystalsFraction,proto3,oneof" json:"crystals_fraction,omitempty"`
+	unknownFields    protoimpl.UnknownFields
+	sizeCache        protoimpl.SizeCache
 }
 
 func (x *SolvedEffect) Reset() {
@@ -790,6 +793,13 @@ func (x *SolvedEffect) GetCirculationKgPerH() float64 {
 func (x *SolvedEffect) GetLiquorHeatingK() float64 {
 	if x != nil && x.LiquorHeatingK != nil {
 		return *x.LiquorHeatingK
+	}
+	return 0
+}
+
+func (x *SolvedEffect) GetCrystalsFraction() float64 {
+	if x != nil && x.CrystalsFraction != nil {
+		return *x.CrystalsFraction
 	}
 	return 0
 }
@@ -1319,8 +1329,7 @@ const file_calandria_v1_train_proto_rawDesc = "" +
 	"\x16_entrainment_kg_per_kgB\x1a\n" +
 	"\x18_condensate_subcooling_kB\x11\n" +
 	"\x0f_liquor_level_mB\x17\n" +
-	"\x15_circulation_kg_per_h\"\xc5\n" +
-	"\n" +
+	"\x15_circulation_kg_per_h\"\x8d\v\n" +
 	"\fSolvedEffect\x12\x17\n" +
 	"\aarea_m2\x18\x01 \x01(\x01R\x06areaM2\x122\n" +
 	"\x16coefficient_w_per_m2_k\x18\x02 \x01(\x01R\x12coefficientWPerM2K\x12(\n" +
@@ -1352,9 +1361,11 @@ const file_calandria_v1_train_proto_rawDesc = "" +
 	"\x0eliquor_level_m\x18\x19 \x01(\x01R\fliquorLevelM\x12\"\n" +
 	"\rstatic_head_k\x18\x1a \x01(\x01R\vstaticHeadK\x124\n" +
 	"\x14circulation_kg_per_h\x18\x1b \x01(\x01H\x00R\x11circulationKgPerH\x88\x01\x01\x12-\n" +
-	"\x10liquor_heating_k\x18\x1c \x01(\x01H\x01R\x0eliquorHeatingK\x88\x01\x01B\x17\n" +
+	"\x10liquor_heating_k\x18\x1c \x01(\x01H\x01R\x0eliquorHeatingK\x88\x01\x01\x120\n" +
+	"\x11crystals_fraction\x18\x1d \x01(\x01H\x02R\x10crystalsFraction\x88\x01\x01B\x17\n" +
 	"\x15_circulation_kg_per_hB\x13\n" +
-	"\x11_liquor_heating_k\"M\n" +
+	"\x11_liquor_heating_kB\x14\n" +
+	"\x12_crystals_fraction\"M\n" +
 	"\aClosure\x12\x12\n" +
 	"\x04mass\x18\x01 \x01(\x01R\x04mass\x12\x16\n" +
 	"\x06solids\x18\x02 \x01(\x01R\x06solids\x12\x16\n" +
