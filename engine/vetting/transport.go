@@ -68,11 +68,22 @@ var conductivities = []conductivityRow{
 	{647.35, 0, 0.124182415e4, 0.515764797e2, 0.496819532e1, 0.985582122e3, 322, 0.692651138e4, 0.275192511e1, 0.124722016e2, 0.312090124e4, 0.452163449e1, 0.322306729e-1, 0.393455495e2, "Table 9"},
 }
 
-// tensions are of IAPWS R1-76(2014) Table 1: degC, mN/m.
+// tensions are of IAPWS R1-76(2014) Table 1, calculated: degC, mN/m.
 var tensions = [][2]float64{
-	{0.01, 75.65}, {10, 74.22}, {20, 72.74}, {30, 71.19}, {40, 69.60}, {50, 67.94}, {60, 66.24}, {70, 64.48},
-	{80, 62.67}, {90, 60.82}, {100, 58.91}, {120, 54.97}, {140, 50.86}, {160, 46.59}, {180, 42.19}, {200, 37.67},
-	{250, 26.04}, {300, 14.36}, {350, 3.67}, {370, 0.39},
+	{0.01, 75.65}, {5, 74.94}, {10, 74.22}, {15, 73.49}, {20, 72.74}, {25, 71.97}, {30, 71.19}, {40, 69.60},
+	{50, 67.94}, {60, 66.24}, {70, 64.48}, {80, 62.67}, {90, 60.82}, {100, 58.91}, {120, 54.97}, {140, 50.86},
+	{150, 48.74}, {160, 46.59}, {180, 42.19}, {200, 37.67}, {250, 26.04}, {300, 14.36}, {350, 3.67}, {370, 0.39},
+}
+
+// enhanced is IAPWS R12-08 Table 5, at 647.35 K: kg/m3, the critical enhancement
+// mu2, which takes IAPWS-95 and industrial use leaves out, and uPa s.
+var enhanced = [][3]float64{
+	{122, 1.00000289, 25.520677},
+	{222, 1.00375120, 31.337589},
+	{272, 1.03416789, 36.228143},
+	{322, 1.09190440, 42.961579},
+	{372, 1.03665871, 45.688204},
+	{422, 1.00596332, 49.436256},
 }
 
 func transportChecks() []Check {
@@ -86,6 +97,13 @@ func transportChecks() []Check {
 			func() (float64, error) {
 				mu, err := steam.ViscosityAtDensity(row[1], quantity.Temperature(row[0]))
 				return mu * 1e6, err
+			})
+	}
+	for _, row := range enhanced {
+		put(fmt.Sprintf("viscosity-647.35K-%gkg/m3", row[0]), fmt.Sprintf("viscosity at 647.35 K and %g kg/m3, with the printed critical enhancement", row[0]), "uPa s", "IAPWS R12-08 Table 5", row[2], sixDecimals,
+			func() (float64, error) {
+				mu, err := steam.ViscosityAtDensity(row[0], 647.35)
+				return mu * 1e6 * row[1], err
 			})
 	}
 	background := func(rho, t float64) (float64, error) {
